@@ -1,0 +1,68 @@
+// Everything answered: a plain value made by solve(case).
+#pragma once
+
+#include <map>
+#include <memory>
+#include <string>
+#include <vector>
+
+#include "core/case/case.h"
+#include "core/locate/locate.h"
+#include "core/patch/patch.h"
+
+namespace runband {
+
+/// What one analysis returned for one contact or for the traverse.
+struct AnalysisResult {
+  std::string id;
+  std::vector<Field> fields;
+  std::vector<Curve> curves;
+  std::vector<Quantity> quantities;
+  std::vector<Mark> marks;
+  std::vector<Volume> volumes;
+  std::vector<Caution> cautions;
+};
+
+struct Contact {
+  bool on_bench = false;  ///< side has no meaning then
+  ContactZone zone;
+  std::optional<Patch> patch;  ///< where it carries load
+  std::map<std::string, AnalysisResult> analyses;
+};
+
+struct Solution {
+  Case asked;
+  std::shared_ptr<const Locator> locator;  ///< null for a bench case
+  WheelsetPose pose;
+  std::vector<Contact> contacts;
+  std::map<std::string, AnalysisResult> analyses;  ///< of the wheelset as a whole
+  std::vector<Caution> cautions;
+  double solve_ms = 0;
+};
+
+/// @throws Error of any kind. Never half-made.
+Solution solve(const Case&, const Progress& = {});
+
+struct SideTraverse {
+  std::vector<double> contact_angle_deg, rolling_radius_mm, wheel_y_mm, rail_y_mm;
+};
+struct Traverse {
+  Case asked;
+  std::shared_ptr<const Locator> locator;
+  std::vector<double> lateral_mm, rolling_radius_difference_mm, roll_mrad, height_mm;
+  SideTraverse left, right;
+  std::vector<ContactJump> jumps;
+  std::map<std::string, AnalysisResult> analyses;
+  std::vector<Caution> cautions;
+};
+Traverse traverse(const Case&, double from_mm, double to_mm, double step_mm, const Progress& = {});
+
+/// JSON and CSV as documented in README; writers of the VTK XML files of --out.
+std::string solution_json(const Solution&);
+std::string solution_csv(const Solution&);
+std::string traverse_json(const Traverse&);
+std::string traverse_csv(const Traverse&);
+/// solution.json, contacts.csv, patch_<side>_<zone>.vti for each patch (pressure and every Field), surfaces as .vtp.
+void write_solution(const Solution&, const std::filesystem::path& folder);
+
+}  // namespace runband
