@@ -1,4 +1,5 @@
-// Every failure of the program: a stable code, one message in three parts (where, what, what to do), and an exit status.
+// Every failure of the program: a stable code, one message in three parts (where, what, what to do), and an exit
+// status.
 #pragma once
 
 #include <stdexcept>

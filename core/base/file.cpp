@@ -28,7 +28,8 @@ std::string read_file(const fs::path& path) {
   std::ostringstream bytes;
   bytes << stream.rdbuf();
   if (stream.bad())
-    throw FileError(ErrorCode::file_unreadable, path.string() + ": reading failed midway.", "check the disk or the network folder.");
+    throw FileError(ErrorCode::file_unreadable, path.string() + ": reading failed midway.",
+                    "check the disk or the network folder.");
   return std::move(bytes).str();
 }
 
@@ -42,7 +43,8 @@ void write_file_by_path(const fs::path& path, const std::function<void(const fs:
   if (problem) throw refuse(problem.message());
   if (fs::is_directory(path, problem)) throw refuse("it is a folder");
   fs::path temporary = path;
-  temporary.replace_filename("." + path.stem().string() + "." + std::to_string(::getpid()) + ".part" + path.extension().string());
+  temporary.replace_filename("." + path.stem().string() + "." + std::to_string(::getpid()) + ".part" +
+                             path.extension().string());
   try {
     write(temporary);
   } catch (...) {
@@ -65,15 +67,17 @@ void write_file(const fs::path& path, const std::function<void(std::ostream&)>& 
     if (stream) write(stream);
     stream.flush();
     if (!stream) {
-      throw FileError(ErrorCode::file_unwritable,
-                      path.string() + ": cannot be written: " + (errno != 0 ? std::strerror(errno) : "the disk refused") + ".",
-                      "choose another place with --out, or free the disk; nothing was changed.");
+      throw FileError(
+          ErrorCode::file_unwritable,
+          path.string() + ": cannot be written: " + (errno != 0 ? std::strerror(errno) : "the disk refused") + ".",
+          "choose another place with --out, or free the disk; nothing was changed.");
     }
   });
 }
 
 void write_file(const fs::path& path, const std::string& bytes) {
-  write_file(path, [&](std::ostream& stream) { stream.write(bytes.data(), static_cast<std::streamsize>(bytes.size())); });
+  write_file(path,
+             [&](std::ostream& stream) { stream.write(bytes.data(), static_cast<std::streamsize>(bytes.size())); });
 }
 
 fs::path data_folder() {

@@ -23,7 +23,9 @@ struct MaterialPair {
 
   /// E*: 1/E* = (1 - nu1^2)/E1 + (1 - nu2^2)/E2. Source: Johnson, Contact Mechanics (1985), eq. 4.24.
   double contact_modulus_MPa() const {
-    const auto compliance = [](const Material& m) { return (1.0 - m.poisson_ratio * m.poisson_ratio) / m.youngs_modulus_MPa; };
+    const auto compliance = [](const Material& m) {
+      return (1.0 - m.poisson_ratio * m.poisson_ratio) / m.youngs_modulus_MPa;
+    };
     return 1.0 / (compliance(wheel) + compliance(rail));
   }
   bool operator==(const MaterialPair&) const = default;

@@ -11,7 +11,8 @@ namespace runband {
 
 /// Passed down into long work. Both parts may be empty.
 struct Progress {
-  std::function<void(double fraction, std::string_view what)> report;  ///< fraction 0..1 of the whole, called from the worker
+  std::function<void(double fraction, std::string_view what)>
+      report;  ///< fraction 0..1 of the whole, called from the worker
   std::stop_token stop;
 
   /// Throws Cancelled if a stop was requested.

@@ -9,12 +9,12 @@ namespace runband {
 
 /// Rectangular grid on the contact patch in its contact frame: x along rolling, s across (towards the field side).
 struct Grid {
-  int nx = 0;         ///< cells along x
-  int ns = 0;         ///< cells along s
-  double x0_mm = 0;   ///< x of the centre of cell (0, 0)
-  double s0_mm = 0;   ///< s of the centre of cell (0, 0)
-  double dx_mm = 0;   ///< cell size along x
-  double ds_mm = 0;   ///< cell size along s
+  int nx = 0;        ///< cells along x
+  int ns = 0;        ///< cells along s
+  double x0_mm = 0;  ///< x of the centre of cell (0, 0)
+  double s0_mm = 0;  ///< s of the centre of cell (0, 0)
+  double dx_mm = 0;  ///< cell size along x
+  double ds_mm = 0;  ///< cell size along s
 
   int cells() const { return nx * ns; }
   double x(int i) const { return x0_mm + i * dx_mm; }
@@ -22,7 +22,8 @@ struct Grid {
   bool operator==(const Grid&) const = default;
 };
 
-/// Scalar, vector or label on the patch grid. values[(j * nx + i) * components + c]; labels are small integers that index `labels`.
+/// Scalar, vector or label on the patch grid. values[(j * nx + i) * components + c]; labels are small integers that
+/// index `labels`.
 struct Field {
   enum class Kind { scalar, vector, label };
   std::string name;   ///< snake_case, unique within its analysis

@@ -13,7 +13,8 @@ std::string number_text(double value);
 /// The same rounded to `digits` significant digits.
 std::string number_text(double value, int digits);
 
-/// The whole of `text` as a double, "." as decimal mark, no locale; nullopt if anything else is in it. Accepts "nan", "inf".
+/// The whole of `text` as a double, "." as decimal mark, no locale; nullopt if anything else is in it. Accepts "nan",
+/// "inf".
 std::optional<double> parse_number(std::string_view text);
 
 /// The known name nearest to `word` by edit distance (with transpositions), or empty if none is near.

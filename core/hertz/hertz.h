@@ -11,7 +11,8 @@ struct HertzCoefficients {
   double axis_ratio = 1;  ///< minor over major, b/a <= 1
   double m = 1, n = 1, r = 1;
 };
-/// @param curvature_ratio A/B, smaller over larger principal relative curvature, in [1e-8, 1] (a/b up to about 1e4 and beyond).
+/// @param curvature_ratio A/B, smaller over larger principal relative curvature, in [1e-8, 1] (a/b up to about 1e4 and
+/// beyond).
 /// @accuracy 1e-13 relative, measured in tests/published.
 HertzCoefficients hertz_coefficients(double curvature_ratio);
 
@@ -34,6 +35,7 @@ HertzEllipse hertz_ellipse(double curvature_rolling_per_mm, double curvature_acr
                            const MaterialPair& material);
 
 /// Force at a given approach: N = C approach^1.5. Same conditions.
-double hertz_force_N(double curvature_rolling_per_mm, double curvature_across_per_mm, double approach_mm, const MaterialPair& material);
+double hertz_force_N(double curvature_rolling_per_mm, double curvature_across_per_mm, double approach_mm,
+                     const MaterialPair& material);
 
 }  // namespace runband

@@ -1,4 +1,5 @@
-// Where they touch: the pose that lets both wheels rest on the rails, every zone that touches, and how they share the load.
+// Where they touch: the pose that lets both wheels rest on the rails, every zone that touches, and how they share the
+// load.
 #pragma once
 
 #include <array>
@@ -21,8 +22,9 @@ struct WheelsetPose {
   double lateral_mm = 0;  ///< as prescribed, at `reference`
   LateralReference reference = LateralReference::axle;
   double yaw_rad = 0;
-  double roll_rad = 0;    ///< solved
-  double height_mm = 0;   ///< solved: height of the axle centre above the running surface, less the mean nominal rolling radius
+  double roll_rad = 0;  ///< solved
+  double height_mm =
+      0;  ///< solved: height of the axle centre above the running surface, less the mean nominal rolling radius
 };
 
 /// Rigid contact of one wheel.
@@ -41,24 +43,24 @@ struct RigidContact {
 
 /// Relative curvatures as fitted over the width of the patch.
 struct FittedCurvature {
-  double rolling_per_mm = 0;      ///< of the wheel; the rail has none
-  double wheel_across_per_mm = 0; ///< positive convex
-  double rail_across_per_mm = 0;  ///< positive convex
-  double across_per_mm = 0;       ///< relative, fitted to the gap over the patch width
-  double misfit = 0;              ///< rms of gap minus its parabola over the patch width, over the approach
+  double rolling_per_mm = 0;       ///< of the wheel; the rail has none
+  double wheel_across_per_mm = 0;  ///< positive convex
+  double rail_across_per_mm = 0;   ///< positive convex
+  double across_per_mm = 0;        ///< relative, fitted to the gap over the patch width
+  double misfit = 0;               ///< rms of gap minus its parabola over the patch width, over the approach
 };
 
 /// One place where a wheel touches a rail, or nearly does.
 struct ContactZone {
   Side side = Side::left;
-  std::string zone;           ///< "tread", "flange root", "flange", "field side"
+  std::string zone;  ///< "tread", "flange root", "flange", "field side"
   bool carries_load = false;
   double wheel_y_mm = 0, wheel_z_mm = 0, rail_y_mm = 0, rail_z_mm = 0;
   Vec3 track_mm = Vec3::Zero();
   Eigen::Matrix3d frame = Eigen::Matrix3d::Identity();  ///< columns x (rolling), s (across), n in the track frame
   double contact_angle_rad = 0;
   double rolling_radius_mm = 0;
-  double gap_mm = 0;          ///< rigid gap along the normal at the solved rigid pose; 0 where they touch
+  double gap_mm = 0;  ///< rigid gap along the normal at the solved rigid pose; 0 where they touch
   double normal_force_N = 0;
   FittedCurvature curvature;
   std::optional<HertzEllipse> ellipse;  ///< where it carries load
@@ -92,16 +94,18 @@ class Locator {
 
   const Pairing& pairing() const;
 
-  /// Rigid contact of both wheels. @throws InputError (no_contact) where a wheel runs off its rail or the flange would climb.
+  /// Rigid contact of both wheels. @throws InputError (no_contact) where a wheel runs off its rail or the flange would
+  /// climb.
   RigidContact rigid(double lateral_mm, double yaw_rad, LateralReference reference = LateralReference::axle) const;
   /// The same with roll held at zero (for comparison with methods that neglect it).
   RigidContact rigid_without_roll(double lateral_mm, double yaw_rad) const;
 
   /// Every zone on both sides within the elastic approach, loads shared, curvatures fitted.
-  Located loaded(double lateral_mm, double yaw_rad, LateralReference reference, const WheelLoads& loads, const MaterialPair& material) const;
+  Located loaded(double lateral_mm, double yaw_rad, LateralReference reference, const WheelLoads& loads,
+                 const MaterialPair& material) const;
 
-  /// Distance between the undeformed surfaces along the zone's normal over its contact frame point (x, s), mm; zero at the
-  /// touching point of a touching zone, gap_mm at the others; infinite where one of the surfaces ends.
+  /// Distance between the undeformed surfaces along the zone's normal over its contact frame point (x, s), mm; zero at
+  /// the touching point of a touching zone, gap_mm at the others; infinite where one of the surfaces ends.
   double gap_mm(const ContactZone& zone, const WheelsetPose& pose, double x_mm, double s_mm) const;
   /// The same over a whole grid, fast. values[j * nx + i].
   std::vector<double> gap_field_mm(const ContactZone& zone, const WheelsetPose& pose, const Grid& grid) const;

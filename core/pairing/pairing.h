@@ -11,9 +11,9 @@ namespace runband {
 
 struct TrackGeometry {
   double gauge_mm = 1435.0;
-  double gauge_depth_mm = 14.0;   ///< the gauge is measured from the running surface down to here
-  double inclination_rad = 0.025; ///< rails lean towards the track centre by this; atan(1/40) for "1:40"
-  double curve_radius_m = 0.0;    ///< 0 straight; + turns left
+  double gauge_depth_mm = 14.0;    ///< the gauge is measured from the running surface down to here
+  double inclination_rad = 0.025;  ///< rails lean towards the track centre by this; atan(1/40) for "1:40"
+  double curve_radius_m = 0.0;     ///< 0 straight; + turns left
   double cant_mm = 0.0;
   bool operator==(const TrackGeometry&) const = default;
 };

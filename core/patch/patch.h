@@ -26,7 +26,7 @@ struct Patch {
   double area_mm2 = 0;
   double peak_pressure_MPa = 0;
   double approach_mm = 0;
-  int iterations = 0;    ///< 0 for the closed form
+  int iterations = 0;  ///< 0 for the closed form
   int convolutions = 0;
   double solve_ms = 0;
 };

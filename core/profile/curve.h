@@ -20,8 +20,8 @@ struct CurvePoint {
   double y() const { return position.x(); }
   double z() const { return position.y(); }
   double slope() const { return d1.y() / d1.x(); }  ///< dz/dy; infinite where the curve is upright
-  /// Signed curvature d(angle)/d(arc), 1/mm: positive where z bends upward along increasing y (a convex wheel tread seen
-  /// from below is positive, a convex rail head is negative).
+  /// Signed curvature d(angle)/d(arc), 1/mm: positive where z bends upward along increasing y (a convex wheel tread
+  /// seen from below is positive, a convex rail head is negative).
   double curvature() const {
     const double speed = d1.norm();
     return (d1.x() * d2.y() - d1.y() * d2.x()) / (speed * speed * speed);

@@ -16,27 +16,28 @@ enum class ProfileKind { wheel, rail };
 
 /// How to read a file of points. What is left empty is taken from the file's header or recognised from the shape.
 struct ProfileOptions {
-  std::optional<double> noise_mm;  ///< standard deviation of the measurement, >= 0; empty: from the file, else estimated
-  std::string unit;                ///< "mm", "m", "in", "um" or empty
-  std::string y_axis;              ///< "field", "gauge" (which side positive y points to) or empty
-  std::string z_axis;              ///< "up", "down" or empty
+  std::optional<double>
+      noise_mm;        ///< standard deviation of the measurement, >= 0; empty: from the file, else estimated
+  std::string unit;    ///< "mm", "m", "in", "um" or empty
+  std::string y_axis;  ///< "field", "gauge" (which side positive y points to) or empty
+  std::string z_axis;  ///< "up", "down" or empty
 };
 
 /// Something the reader should know of a profile that could still be used.
 struct Finding {
-  std::string code;       ///< snake_case, stable
-  std::string text;       ///< a sentence
-  long first_row = 0;     ///< 1-based line in the file, 0 if not of a line
-  Vec2 at = Vec2::Zero(); ///< profile frame, mm
+  std::string code;        ///< snake_case, stable
+  std::string text;        ///< a sentence
+  long first_row = 0;      ///< 1-based line in the file, 0 if not of a line
+  Vec2 at = Vec2::Zero();  ///< profile frame, mm
 };
 
 /// How measured points were smoothed.
 struct ProfileFit {
-  double noise_mm = 0;          ///< stated or estimated standard deviation
+  double noise_mm = 0;  ///< stated or estimated standard deviation
   bool noise_estimated = false;
-  double residual_rms_mm = 0;   ///< of points against the fitted curve, along its normal
+  double residual_rms_mm = 0;  ///< of points against the fitted curve, along its normal
   double residual_max_mm = 0;
-  double smoothing = 0;         ///< weight of the roughness penalty that noise led to
+  double smoothing = 0;  ///< weight of the roughness penalty that noise led to
   double effective_parameters = 0;
 };
 
@@ -56,7 +57,8 @@ struct Profile {
 
 /// Loads "standard:NAME", a .toml definition or a file of points. A relative path is taken from `base_folder`.
 /// @throws InputError (11x, 10x) with file and line; FileError.
-std::shared_ptr<const Profile> load_profile(const std::string& spec, ProfileKind kind, const ProfileOptions& options = {},
+std::shared_ptr<const Profile> load_profile(const std::string& spec, ProfileKind kind,
+                                            const ProfileOptions& options = {},
                                             const std::filesystem::path& base_folder = {});
 
 /// A profile from points already in the profile frame (mm), fitted with the given noise. `name` appears in messages.
@@ -66,8 +68,8 @@ std::shared_ptr<const Profile> profile_from_points(std::vector<Vec2> points, Pro
 /// Names that "standard:NAME" takes, with titles.
 std::vector<std::pair<std::string, std::string>> standard_profiles();
 
-/// The figures that the trade reads off a profile, as named quantities (flange height, thickness and slope dimension, hollow
-/// depth, head width, ...; wear against `reference` if given).
+/// The figures that the trade reads off a profile, as named quantities (flange height, thickness and slope dimension,
+/// hollow depth, head width, ...; wear against `reference` if given).
 std::vector<Quantity> describe_profile(const Profile& profile, const Profile* reference = nullptr);
 /// Profile minus reference along the reference's normal, over y. Unit: mm, positive where material is missing.
 Curve wear_against(const Profile& profile, const Profile& reference);
