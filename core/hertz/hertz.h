@@ -11,9 +11,12 @@ struct HertzCoefficients {
   double axis_ratio = 1;  ///< minor over major, b/a <= 1
   double m = 1, n = 1, r = 1;
 };
-/// @param curvature_ratio A/B, smaller over larger principal relative curvature, in [1e-8, 1] (a/b up to about 1e4 and
-/// beyond).
-/// @accuracy 1e-13 relative, measured in tests/published.
+/// @param curvature_ratio A/B, smaller over larger principal relative curvature, in [1e-20, 1]. At 1e-7 the ellipse is
+///                        about 1e4 times longer than wide.
+/// @throws InputError (out_of_range) outside that range: below it the contact is a line and has no finite ellipse.
+/// @accuracy 5e-15 relative for b/a from 1e-4 to 1, measured against Boost.Math in
+/// tests/published/hertz_table_test.cpp.
+/// @source   Hertz 1881; the complete integrals by the arithmetic-geometric mean (Abramowitz & Stegun 17.6).
 HertzCoefficients hertz_coefficients(double curvature_ratio);
 
 struct HertzEllipse {
@@ -30,11 +33,12 @@ struct HertzEllipse {
 /// @param curvature_rolling_per_mm  1/R summed over both bodies in the rolling direction. Unit 1/mm, > 0.
 /// @param curvature_across_per_mm   1/R summed over both bodies across. Unit 1/mm, > 0.
 /// @param normal_force_N            > 0.
-/// @throws InputError (out_of_range) if a curvature or the force is not finite and positive.
+/// @throws InputError (out_of_range) if a curvature or the force is not finite and positive, if one curvature is more
+///         than 1e20 times the other, or if the material is not elastic (E > 0, Poisson's ratio in (-1, 0.5]).
 HertzEllipse hertz_ellipse(double curvature_rolling_per_mm, double curvature_across_per_mm, double normal_force_N,
                            const MaterialPair& material);
 
-/// Force at a given approach: N = C approach^1.5. Same conditions.
+/// Force at a given approach: N = C approach^1.5. Same conditions. The approach must be finite and > 0.
 double hertz_force_N(double curvature_rolling_per_mm, double curvature_across_per_mm, double approach_mm,
                      const MaterialPair& material);
 
