@@ -7,6 +7,7 @@
 #define TOML_EXCEPTIONS 1
 #include <toml++/toml.h>
 
+#include "core/base/error.h"
 #include "core/base/text.h"
 #include "core/profile/checks.h"
 #include "core/profile/pieces.h"
@@ -107,8 +108,6 @@ class Reader {
   const toml::table& table_;
   std::string origin_, what_;
 };
-
-double cross(const Vec2& a, const Vec2& b) { return a.x() * b.y() - a.y() * b.x(); }
 
 // What one piece hands to the next.
 struct Pen {
