@@ -112,13 +112,24 @@ Outline rail_outline(const Profile& rail, double chord_error_mm, double max_edge
   Outline outline = profile_points(rail, chord_error_mm, max_edge_mm);
   const Vec2 gauge_end = outline.front();
   const Vec2 field_end = outline.back();
-  const auto [lowest_y, highest_y] =
-      std::minmax_element(outline.begin(), outline.end(), [](const Vec2& a, const Vec2& b) { return a.x() < b.x(); });
-  const double width = highest_y->x() - lowest_y->x();
+  // The width of the head where the trade measures it, 14 mm below its top, or where a shorter profile ends.
+  constexpr double kGaugeDepth_mm = -14.0;
+  double lowest_y = 0.0, highest_y = 0.0;
+  const auto widen = [&](double y) {
+    lowest_y = std::min(lowest_y, y);
+    highest_y = std::max(highest_y, y);
+  };
+  for (std::size_t i = 0; i < outline.size(); ++i) {
+    if (outline[i].y() >= kGaugeDepth_mm) widen(outline[i].x());
+    if (i == 0) continue;
+    const double above = outline[i - 1].y() - kGaugeDepth_mm, below = outline[i].y() - kGaugeDepth_mm;
+    if (above * below < 0.0) widen((outline[i - 1] + (outline[i] - outline[i - 1]) * (above / (above - below))).x());
+  }
+  const double width = highest_y - lowest_y;
   // The web stands under the profile's origin unless the profile hardly reaches to one side of it.
   double middle = 0.0;
   if (std::min(-gauge_end.x(), field_end.x()) < 0.2 * width) middle = 0.5 * (gauge_end.x() + field_end.x());
-  const double scale = 2.0 * std::max(middle - lowest_y->x(), highest_y->x() - middle) / 72.0;
+  const double scale = 2.0 * std::max(middle - lowest_y, highest_y - middle) / 72.0;
   const double web = std::min({8.25 * scale, 0.8 * (field_end.x() - middle), 0.8 * (middle - gauge_end.x())});
   constexpr double kFishing = 1.0 / 2.75;  // slope of the fishing surfaces, head and foot
 
