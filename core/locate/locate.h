@@ -97,6 +97,10 @@ class Locator {
   /// Rigid contact of both wheels. @throws InputError (no_contact) where a wheel runs off its rail or the flange would
   /// climb.
   RigidContact rigid(double lateral_mm, double yaw_rad, LateralReference reference = LateralReference::axle) const;
+  /// rigid() at every position, in order, each starting from its neighbour's roll: the traverse. Positions that have no
+  /// rigid contact throw as in rigid(). @param lateral_mm in any order, ascending is fastest.
+  std::vector<RigidContact> rigid(const std::vector<double>& lateral_mm, double yaw_rad,
+                                  LateralReference reference = LateralReference::axle) const;
   /// The same with roll held at zero (for comparison with methods that neglect it).
   RigidContact rigid_without_roll(double lateral_mm, double yaw_rad) const;
 

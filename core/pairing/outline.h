@@ -1,5 +1,5 @@
-// Samples of a profile curve for searching: even steps of arc, every break among them. What is found between two samples
-// is then polished on the exact curve.
+// Samples of a profile curve for searching: even steps of arc, every break among them. What is found between two
+// samples is then polished on the exact curve.
 #pragma once
 
 #include <vector>

@@ -110,8 +110,8 @@ double active_face(const Profile& wheel, const WheelsetGeometry& wheelset) {
     if (samples[i - 1].y() > 0.0) break;
     const bool leaves = samples[i - 1].z() < -kFlangeDepth_mm && samples[i].z() >= -kFlangeDepth_mm;
     if (!leaves) continue;
-    const double t = halve(samples[i - 1].t, samples[i].t,
-                           [&](double at) { return wheel.curve->at(at).z() + kFlangeDepth_mm; });
+    const double t =
+        halve(samples[i - 1].t, samples[i].t, [&](double at) { return wheel.curve->at(at).z() + kFlangeDepth_mm; });
     face = std::max(face, wheelset.running_circle_y_mm() + wheel.curve->at(t).y());
   }
   return face;
@@ -152,12 +152,12 @@ Pairing::Pairing(std::array<std::shared_ptr<const Profile>, 2> wheels,
       throw InputError(ErrorCode::missing_key, std::string("the ") + side_name(side) + " wheel or rail has no profile.",
                        "name one profile for the wheels and one for the rails.");
     if (wheels_[k]->kind != ProfileKind::wheel || rails_[k]->kind != ProfileKind::rail)
-      throw InputError(ErrorCode::conflicting_keys,
-                       std::string("the ") + side_name(side) + " pairing has a " +
-                           (wheels_[k]->kind != ProfileKind::wheel ? "rail profile on the wheel"
-                                                                   : "wheel profile on the rail") +
-                           ".",
-                       "exchange the two profiles.");
+      throw InputError(
+          ErrorCode::conflicting_keys,
+          std::string("the ") + side_name(side) + " pairing has a " +
+              (wheels_[k]->kind != ProfileKind::wheel ? "rail profile on the wheel" : "wheel profile on the rail") +
+              ".",
+          "exchange the two profiles.");
     mounts_[k] = mount_rail(*rails_[k], side, track);
     faces += active_face(*wheels_[k], wheelset);
   }
