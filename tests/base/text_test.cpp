@@ -74,6 +74,8 @@ TEST(NearestName, FindsSlipsOfTheKeyboard) {
   EXPECT_EQ(nearest_name("lateral", known), "lateral_mm");
   EXPECT_EQ(nearest_name("cell", known), "cells");
   EXPECT_EQ(nearest_name("rolling_raduis_mm", known), "rolling_radius_mm");
+  // Two neighbours exchanged are one slip, not two: nearer than two wrong letters.
+  EXPECT_EQ(nearest_name("form", std::vector<std::string>{"fond", "from"}), "from");
   EXPECT_EQ(nearest_name("temperature", known), "");
   EXPECT_EQ(nearest_name("zz", std::vector<std::string>{}), "");
 }
