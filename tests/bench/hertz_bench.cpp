@@ -35,4 +35,12 @@ void hertz_ellipses(benchmark::State& state) {
 }
 BENCHMARK(hertz_ellipses)->Arg(2)->Arg(7);
 
+// The exact cell averages on a grid of so many cells along the longer side.
+void hertz_patches(benchmark::State& state) {
+  const runband::HertzEllipse ellipse = runband::hertz_ellipse(1.0 / 460.0, 1.0 / 300.0, 1e5, {});
+  const runband::PatchOptions options{.method = runband::PatchMethod::hertz, .cells = static_cast<int>(state.range(0))};
+  for (auto _ : state) benchmark::DoNotOptimize(runband::hertz_patch(ellipse, options));
+}
+BENCHMARK(hertz_patches)->Arg(64)->Arg(256)->Unit(benchmark::kMicrosecond);
+
 }  // namespace

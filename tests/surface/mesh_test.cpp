@@ -65,6 +65,15 @@ TEST(WheelMesh, IsClosedOrientedAndFreeOfCrossingsForEveryStandardWheel) {
   expect_sound(axle_mesh(1360.0, wheel_bore_radius_mm(460.0), {.chord_error_mm = 0.1}), "axle");
 }
 
+// Measured points carry noise, and a worn head ends where the measurement did.
+TEST(Mesh, IsSoundForMeasuredProfiles) {
+  const std::string demo = std::string(RUNBAND_DATA) + "/demo/";
+  for (const char* name : {"rail_high_new.csv", "rail_high_worn.csv", "rail_low.csv"})
+    expect_sound(rail_mesh(*load_profile(demo + name, ProfileKind::rail), 0.0, 50.0), name);
+  for (const char* name : {"wheel_new.csv", "wheel_worn.csv"})
+    expect_sound(wheel_mesh(*load_profile(demo + name, ProfileKind::wheel), 460.0, {.chord_error_mm = 0.3}), name);
+}
+
 // 60E1 (EN 13674-1): height 172 mm, foot 150 mm, section 76.70 cm2 (memory). The body is plain, so its area may differ
 // a little; height and foot follow the head's width of 72 mm.
 TEST(RailMesh, HasTheProportionsOfARail) {
