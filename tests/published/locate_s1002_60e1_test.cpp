@@ -77,8 +77,8 @@ TEST(LocateS1002On60E1, JumpsOfTheLeftWheel) {
   std::vector<ContactJump> left;
   for (const ContactJump& jump : locate.jumps(0.1, 6.3, 0.0, LateralReference::axle))
     if (jump.side == Side::left && std::abs(jump.wheel_y_to_mm - jump.wheel_y_from_mm) > 1.0) left.push_back(jump);
-  // Arc D of the wheel and the rail's gauge corner have one radius: the third jump runs along the whole arc. The step of
-  // 1e-4 mm in the published profile at y = -35 makes a jump of its own, shorter than a millimetre, just before it.
+  // Arc D of the wheel and the rail's gauge corner have one radius: the third jump runs along the whole arc. The step
+  // of 1e-4 mm in the published profile at y = -35 makes a jump of its own, shorter than a millimetre, just before it.
   const double at[] = {0.22592, 4.99181, 6.25973}, from[] = {2.04, -17.70, -35.0}, to[] = {-7.74, -28.58, -38.43};
   ASSERT_EQ(left.size(), 3u);
   for (std::size_t k = 0; k < 3; ++k) {
