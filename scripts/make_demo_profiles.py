@@ -125,8 +125,8 @@ def write(folder, name, title, points):
 
 def wheel_wear(y, z):
     """A hollow tread, and a flank thinned where it meets the gauge face."""
-    tread = 3.6 * step(y, -22.0, 9.0) * (1.0 - step(y, 29.0, 9.0))
-    flank = 1.2 * math.exp(-(((z + 9.0) / 9.0) ** 2)) * step(y, -50.0, 2.0) * (1.0 - step(y, -25.0, 3.0))
+    tread = 3.6 * step(y, -27.0, 12.0) * (1.0 - step(y, 30.0, 9.0))
+    flank = 1.0 * math.exp(-(((z + 9.0) / 9.0) ** 2)) * step(y, -50.0, 2.0) * (1.0 - step(y, -25.0, 3.0))
     return tread + flank
 
 

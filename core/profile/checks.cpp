@@ -97,7 +97,13 @@ void to_millimetres(CheckedPoints& in, const std::string& stated_unit) {
                                : "it looks like " + looks_like + ": write '# unit: " + looks_like +
                                      "' into the file or give the unit as an option.";
   if (stated_unit.empty()) {
-    if (looks_like == "mm") return;
+    if (looks_like == "mm") {
+      in.findings.push_back({"unit_recognised",
+                             "no unit is stated; the profile is " + number_text(width, 4) +
+                                 " wide, which is a profile in mm and in no other unit.",
+                             0, Vec2::Zero()});
+      return;
+    }
     throw InputError(ErrorCode::profile_wrong_unit,
                      in.origin + ": no unit is stated and the profile would be " + number_text(width, 4) + " mm wide.",
                      cure);

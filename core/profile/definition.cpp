@@ -266,10 +266,10 @@ Piece read_polynomial(const Reader& in) {
 }
 
 Piece read_segment(const Reader& in, const Pen& pen) {
-  static const std::vector<std::string> common{"kind", "corner"};
-  static const std::vector<std::string> line_keys{"kind", "corner", "from", "to", "to_y", "to_z", "slope"};
-  static const std::vector<std::string> arc_keys{"kind", "corner", "centre", "radius", "y",        "branch", "from",
-                                                 "to",   "to_y",   "to_z",   "turn",   "to_slope", "slope"};
+  // Longer names first: of two that are equally near a misspelt key, the first is proposed.
+  static const std::vector<std::string> line_keys{"corner", "slope", "to_y", "to_z", "from", "kind", "to"};
+  static const std::vector<std::string> arc_keys{"to_slope", "centre", "branch", "radius", "corner", "slope", "turn",
+                                                 "to_y",     "to_z",   "from",   "kind",   "to",     "y"};
   static const std::vector<std::string> polynomial_keys{"kind", "corner", "y", "origin", "coefficients"};
   const std::string kind = in.word("kind", {"line", "arc", "polynomial"});
   in.allow_only(kind == "line" ? line_keys : kind == "arc" ? arc_keys : polynomial_keys);
