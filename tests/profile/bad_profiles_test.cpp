@@ -123,7 +123,9 @@ TEST(BadProfiles, AreAllInTheTable) {
   std::map<std::string, int> known;
   for (const BadProfile& bad : kBadProfiles) ++known[bad.file];
   for (const auto& entry : fs::directory_iterator(kFolder))
-    if (entry.path().extension() != ".md") EXPECT_EQ(known[entry.path().filename().string()], 1) << entry.path();
+    if (entry.path().extension() != ".md") {
+      EXPECT_EQ(known[entry.path().filename().string()], 1) << entry.path();
+    }
 }
 
 TEST(BadProfiles, AMissingFileIsAnErrorOfTheFile) {

@@ -45,8 +45,12 @@ TEST(DemoProfiles, FitWithinTheirNoise) {
 TEST(DemoProfiles, WornWheelIsHollowByTwoMillimetres) {
   const auto wheel = load_profile((kDemo / "wheel_worn.csv").string(), ProfileKind::wheel);
   for (const Quantity& q : describe_profile(*wheel, s1002().get())) {
-    if (q.name == "hollow_depth") EXPECT_NEAR(q.value, 2.0, 0.3);
-    if (q.name == "wear_max") EXPECT_NEAR(q.value, 3.6, 0.1);
+    if (q.name == "hollow_depth") {
+      EXPECT_NEAR(q.value, 2.0, 0.3);
+    }
+    if (q.name == "wear_max") {
+      EXPECT_NEAR(q.value, 3.6, 0.1);
+    }
   }
 }
 

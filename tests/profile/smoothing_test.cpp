@@ -120,9 +120,9 @@ TEST(SmoothPoints, RecoverCurvatureOverThePatchWidth) {
     double y, tolerance_per_mm;
   };
   const auto wheel = s1002(), rail = rail60();
-  // Measured 1e-4 to 3e-4 on tread and crown, 5e-4 at the gauge corner (curvature 0.078).
+  // Measured 1e-4 to 4e-4 on tread and head, 5e-4 at the gauge corner (curvature 0.078).
   const std::vector<Place> places{{wheel, -15, 3.6e-4}, {wheel, -5, 2.5e-4}, {wheel, 3, 2.5e-4}, {wheel, 13, 2.5e-4},
-                                  {rail, 0, 3.6e-4},    {rail, -6, 3.6e-4},  {rail, -14, 4e-4},  {rail, -31, 9e-4}};
+                                  {rail, 0, 3.6e-4},    {rail, -6, 3.6e-4},  {rail, -14, 5e-4},  {rail, -31, 9e-4}};
   for (const double width : {8.0, 10.0, 12.0}) {
     std::vector<std::vector<double>> errors(places.size());
     for (std::uint64_t seed = 1; seed <= 40; ++seed) {
