@@ -168,6 +168,21 @@ RailPoint SideGeometry::rail_at(double u) const {
   return point;
 }
 
+double SideGeometry::wheel_parameter(const Vec2& on_wheel) const {
+  const double axial = running_circle_y_ + on_wheel.x(), radius = rolling_radius(on_wheel.y());
+  Eigen::Index nearest = 0;
+  ((axial_ - axial).square() + (radius_ - radius).square()).minCoeff(&nearest);
+  const Eigen::Index first = std::max<Eigen::Index>(nearest - 1, 0), last = std::min(nearest + 1, t_.size() - 1);
+  double t = t_[nearest];
+  for (int k = 0; k < 12; ++k) {
+    const CurvePoint p = wheel_->at(t);
+    const double next = std::clamp(t + (on_wheel - p.position).dot(p.d1) / p.d1.squaredNorm(), t_[first], t_[last]);
+    if (std::abs(next - t) < 1e-13 * std::max(1.0, std::abs(t))) break;
+    t = next;
+  }
+  return t;
+}
+
 void SideGeometry::scan(const SidePose& pose, SearchSpace& space) const {
   const Vec3& a = pose.axis;
   const double ax2 = a.x() * a.x(), level2 = 1.0 - ax2;

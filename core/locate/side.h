@@ -70,8 +70,10 @@ class SideGeometry {
   double climb_t() const { return climb_t_; }
   double flange_angle() const { return flange_angle_; }
   double field_end_y() const { return field_end_y_; }
-  double rail_begin_u() const { return rail_table_->begin; }
-  double rail_end_u() const { return rail_table_->end; }
+  double wheel_y_at(Eigen::Index sample) const { return axial_[sample] - running_circle_y_; }
+
+  /// Parameter of the wheel curve's point nearest to a point of the profile frame that lies on it.
+  double wheel_parameter(const Vec2& on_wheel) const;
 
   /// The lowest minimum. `exists` is false where wheel and rail have no common u.
   bool lowest(const SidePose& pose, SearchSpace& space, Touch& touch) const;
