@@ -1,0 +1,42 @@
+// The linear system of one Newton step: its rows, its preconditioner, and the Krylov iteration that solves it.
+#pragma once
+
+#include <vector>
+
+#include "core/halfspace/rolling_level.h"
+
+namespace runband::halfspace {
+
+/// Rows: stick (A dp + sigma dp) / D; slip omega (t.(A dp) + (lambda + sigma) tau) / D along t, dp = tau t. Vectors hold
+/// pairs on the box; in slip cells they lie along t, outside contact they are zero.
+struct LinearSystem {
+  const RollingLevel* level = nullptr;
+  std::vector<float> mask;       ///< per value: 1 in stick cells, 0 in others
+  std::vector<float> tangent;    ///< per cell a pair: t in slip cells, (0, 0) in others
+  std::vector<float> shift;      ///< per cell: (edge D + sigma + lambda)
+  std::vector<float> weight;     ///< per cell: omega in slip cells, 1 in stick cells, 0 outside
+  std::vector<float> lambda;     ///< per cell: |s| / g in slip cells, 0 in others
+  double sigma = 0;
+
+  /// out = rows applied to in. in != out.
+  void apply(const float* in, float* out, PairScratch<float>& scratch) const;
+  /// out = M in: integrates the upwind stencil along each strip from the leading edge, inverts the circulant of K, and
+  /// restricts to the free directions.
+  void precondition(const float* in, float* out, PairScratch<float>& scratch) const;
+  /// Removes from v what is outside contact, and in slip cells what is normal to t.
+  void restrict_to_free(float* v) const;
+};
+
+struct KrylovResult {
+  int iterations = 0;
+  double relative_residual = 1;
+};
+
+/// Right-preconditioned flexible GMRES from zero. `solution` receives M-combined directions. Source: Y. Saad, SIAM J. Sci.
+/// Comput. 14 (1993) 461.
+/// @param basis, directions  Scratch, (max_iterations + 1) vectors each.
+KrylovResult solve_fgmres(const LinearSystem& system, const std::vector<float>& rhs, double tolerance, int max_iterations,
+                          std::vector<float>& basis, std::vector<float>& directions, PairScratch<float>& scratch,
+                          std::vector<float>& solution);
+
+}  // namespace runband::halfspace
