@@ -19,7 +19,9 @@ SlipStencil steady_stencil(UpwindOrder order) {
 void fill_slivers(const RollingProblem& problem, RollingResult& result) {
   if (problem.area_fraction.empty()) return;
   const Grid& g = problem.grid;
-  const auto index = [&](int i, int j) { return static_cast<std::size_t>(j) * static_cast<std::size_t>(g.nx) + static_cast<std::size_t>(i); };
+  const auto index = [&](int i, int j) {
+    return static_cast<std::size_t>(j) * static_cast<std::size_t>(g.nx) + static_cast<std::size_t>(i);
+  };
   const auto bound = [&](std::size_t c) {
     return problem.pressure_MPa[c] * (problem.friction.size() == 1 ? problem.friction[0] : problem.friction[c]);
   };
@@ -62,7 +64,8 @@ void sum_forces(const Grid& g, RollingResult& result) {
   }
 }
 
-RollingResult solve(const RollingProblem& problem, const RollingOptions& options, bool steady, const Progress& progress) {
+RollingResult solve(const RollingProblem& problem, const RollingOptions& options, bool steady,
+                    const Progress& progress) {
   const Grid& grid = problem.grid;
   const auto cells = static_cast<std::size_t>(grid.nx) * static_cast<std::size_t>(grid.ns);
   RollingResult result;
@@ -83,13 +86,15 @@ RollingResult solve(const RollingProblem& problem, const RollingOptions& options
     for (int i = 0; i < level.nx(); ++i) {
       const auto k = static_cast<std::size_t>(j) * static_cast<std::size_t>(level.nx()) + static_cast<std::size_t>(i);
       if (level.in[k] == 0) continue;
-      const auto c = static_cast<std::size_t>(j + box.j0) * static_cast<std::size_t>(grid.nx) + static_cast<std::size_t>(i + box.i0);
+      const auto c = static_cast<std::size_t>(j + box.j0) * static_cast<std::size_t>(grid.nx) +
+                     static_cast<std::size_t>(i + box.i0);
       const double px = m.traction[2 * k], ps = m.traction[2 * k + 1];
       result.traction_MPa[2 * c] = px * box.unit_traction_MPa;
       result.traction_MPa[2 * c + 1] = ps * box.unit_traction_MPa;
       result.slip[2 * c] = m.slip[2 * k] * slip_unit;
       result.slip[2 * c + 1] = m.slip[2 * k + 1] * slip_unit;
-      const bool slips = std::hypot(px, ps) >= level.bound[k] * (1 - 1e-12) && px * m.slip[2 * k] + ps * m.slip[2 * k + 1] < 0;
+      const bool slips =
+          std::hypot(px, ps) >= level.bound[k] * (1 - 1e-12) && px * m.slip[2 * k] + ps * m.slip[2 * k + 1] < 0;
       result.state[c] = slips ? RollingState::slip : RollingState::stick;
     }
   }
@@ -98,7 +103,8 @@ RollingResult solve(const RollingProblem& problem, const RollingOptions& options
   return result;
 }
 
-RollingResult solve_and_extrapolate(const RollingProblem& problem, const RollingOptions& options, bool steady, const Progress& progress) {
+RollingResult solve_and_extrapolate(const RollingProblem& problem, const RollingOptions& options, bool steady,
+                                    const Progress& progress) {
   RollingResult result = solve(problem, options, steady, progress);
   if (!options.extrapolate || std::max(problem.grid.nx, problem.grid.ns) < 8) return result;
   const RollingResult coarse = solve(halved(problem), options, steady, progress);
@@ -126,9 +132,10 @@ ElasticPair elastic_pair(const MaterialPair& material) {
 
 std::vector<Caution> elastic_pair_cautions(const ElasticPair& pair) {
   if (std::abs(pair.coupling) <= 0.01) return {};
-  return {{"materials_not_alike", Severity::caution,
-           "Wheel and rail differ in elasticity, so that pressure alone makes the surfaces slip; the half-space solution "
-           "leaves that out. Expect creep forces wrong by a few per cent of the friction limit at small creepage."}};
+  return {
+      {"materials_not_alike", Severity::caution,
+       "Wheel and rail differ in elasticity, so that pressure alone makes the surfaces slip; the half-space solution "
+       "leaves that out. Expect creep forces wrong by a few per cent of the friction limit at small creepage."}};
 }
 
 std::vector<double> rigid_slip(const Grid& grid, double longitudinal, double lateral, double spin_per_mm) {
@@ -148,7 +155,9 @@ std::vector<double> ellipse_fraction(const Grid& grid, double semi_axis_rolling_
   require_positive("ellipse", "semi-axis across", semi_axis_across_mm, "mm");
   const double a = semi_axis_rolling_mm, b = semi_axis_across_mm;
   // Area between the axis, the circle and x = 0..t in the unit circle's first quadrant.
-  const auto under = [](double t) { return 0.5 * (t * std::sqrt(std::max(0.0, 1 - t * t)) + std::asin(std::clamp(t, -1.0, 1.0))); };
+  const auto under = [](double t) {
+    return 0.5 * (t * std::sqrt(std::max(0.0, 1 - t * t)) + std::asin(std::clamp(t, -1.0, 1.0)));
+  };
   // Area of the unit circle's part with 0 <= x <= u and 0 <= y <= v, odd in u and in v.
   const auto corner = [&](double u, double v) {
     const double sign = (u < 0) != (v < 0) ? -1.0 : 1.0;
@@ -162,7 +171,8 @@ std::vector<double> ellipse_fraction(const Grid& grid, double semi_axis_rolling_
   for (int j = 0; j < grid.ns; ++j) {
     for (int i = 0; i < grid.nx; ++i) {
       const double x = grid.x(i) / a, s = grid.s(j) / b;
-      const double area = corner(x + hx, s + hs) - corner(x - hx, s + hs) - corner(x + hx, s - hs) + corner(x - hx, s - hs);
+      const double area =
+          corner(x + hx, s + hs) - corner(x - hx, s + hs) - corner(x + hx, s - hs) + corner(x - hx, s - hs);
       f.push_back(std::clamp(area / (4 * hx * hs), 0.0, 1.0));
     }
   }

@@ -14,8 +14,8 @@ namespace runband::halfspace {
 struct ElasticPair {
   double shear_modulus_MPa = 0;  ///< G: 1/G = (1/G1 + 1/G2) / 2
   double poisson_ratio = 0;      ///< nu: nu/G = (nu1/G1 + nu2/G2) / 2
-  /// Kalker's K = G/4 ((1 - 2 nu1)/G1 - (1 - 2 nu2)/G2): zero for quasi-identical bodies, for which normal and tangential
-  /// problem are exactly independent.
+  /// Kalker's K = G/4 ((1 - 2 nu1)/G1 - (1 - 2 nu2)/G2): zero for quasi-identical bodies, for which normal and
+  /// tangential problem are exactly independent.
   double coupling = 0;
 };
 /// @source J. J. Kalker, Three-Dimensional Elastic Bodies in Rolling Contact (1990), eq. 1.44.
@@ -45,9 +45,9 @@ enum class UpwindOrder { first = 1, second = 2 };
 
 struct RollingOptions {
   UpwindOrder order = UpwindOrder::second;
-  double tolerance = 1e-6;  ///< on the friction law: ||p - Proj(p - s/D)|| / ||p||; 1e-10..1e-2
-  bool extrapolate = false; ///< also solve on cells of twice the size, and extrapolate the forces to zero cell size
-  int max_steps = 60;       ///< Newton steps on one grid before the fallback
+  double tolerance = 1e-6;   ///< on the friction law: ||p - Proj(p - s/D)|| / ||p||; 1e-10..1e-2
+  bool extrapolate = false;  ///< also solve on cells of twice the size, and extrapolate the forces to zero cell size
+  int max_steps = 60;        ///< Newton steps on one grid before the fallback
 };
 
 enum class RollingState : std::uint8_t { open = 0, stick = 1, slip = 2 };
@@ -58,9 +58,9 @@ struct RollingResult {
   std::vector<RollingState> state;   ///< per cell
   double force_rolling_N = 0;        ///< on the wheel, along x; small creepage xi gives -G a b C11 xi
   double force_across_N = 0;
-  double moment_normal_Nmm = 0;      ///< about n through the grid's origin
-  int iterations = 0;                ///< Newton steps over all grids
-  double convolutions = 0;           ///< work in units of one convolution (float) of the finest grid
+  double moment_normal_Nmm = 0;  ///< about n through the grid's origin
+  int iterations = 0;            ///< Newton steps over all grids
+  double convolutions = 0;       ///< work in units of one convolution (float) of the finest grid
   double residual = 0;
   int grids = 0;
   bool used_fallback = false;  ///< time marching had to finish
@@ -68,16 +68,18 @@ struct RollingResult {
 
 /// Tractions, slip, and stick and slip areas.
 ///
-/// Leading edge at +x. Slip s dx = w dx + u(x) - u(x + dx) (first order) obeys Coulomb's law |p| <= mu p_n, and p = -mu p_n
-/// s/|s| where it slips. Solved by a semismooth Newton method on a sequence of grids. Deterministic; several threads may
-/// solve at once.
+/// Leading edge at +x. Slip s dx = w dx + u(x) - u(x + dx) (first order) obeys Coulomb's law |p| <= mu p_n, and p = -mu
+/// p_n s/|s| where it slips. Solved by a semismooth Newton method on a sequence of grids. Deterministic; several
+/// threads may solve at once.
 /// @throws InputError (out_of_range) for sizes that disagree, or values that are not finite or of the wrong sign.
 /// @throws NotConverged if neither Newton nor time marching meets the tolerance. Cancelled on request.
 /// @source J. J. Kalker, Three-Dimensional Elastic Bodies in Rolling Contact (1990), ch. 4.
-RollingResult solve_rolling(const RollingProblem& problem, const RollingOptions& options = {}, const Progress& progress = {});
+RollingResult solve_rolling(const RollingProblem& problem, const RollingOptions& options = {},
+                            const Progress& progress = {});
 
-/// The same bodies at rest: tractions after a rigid shift (`problem.slip` in mm instead of relative to V) applied in one
-/// step to unloaded surfaces. Cattaneo's and Mindlin's problem for any patch. `slip` of the result is in mm.
-RollingResult solve_shift(const RollingProblem& problem, const RollingOptions& options = {}, const Progress& progress = {});
+/// The same bodies at rest: tractions after a rigid shift (`problem.slip` in mm instead of relative to V) applied in
+/// one step to unloaded surfaces. Cattaneo's and Mindlin's problem for any patch. `slip` of the result is in mm.
+RollingResult solve_shift(const RollingProblem& problem, const RollingOptions& options = {},
+                          const Progress& progress = {});
 
 }  // namespace runband::halfspace

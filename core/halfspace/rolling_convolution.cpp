@@ -22,8 +22,8 @@ std::mutex& planner_mutex() {
 constexpr std::size_t kStridePadding = 4;
 
 template <typename Real>
-void* make_plan(int length, int howmany, int in_stride, int in_distance, int out_stride, int out_distance, bool in_place,
-                std::size_t in_size, std::size_t out_size, int sign) {
+void* make_plan(int length, int howmany, int in_stride, int in_distance, int out_stride, int out_distance,
+                bool in_place, std::size_t in_size, std::size_t out_size, int sign) {
   const int n[1] = {length};
   ComplexBuffer<Real> in(in_size), out(in_place ? 1 : out_size);
   std::complex<Real>* to = in_place ? in.data() : out.data();

@@ -9,9 +9,10 @@
 
 namespace runband::halfspace {
 
-/// The complex transform of a box nx x ns held in a padded rectangle px x ps. The rows that padding leaves empty are not
-/// transformed, and the column pass transposes on the way, so that its memory accesses stay in cache. Immutable;
-/// shared by threads without a lock. Plans are estimated, never measured: the same plan, hence the same bits, each time.
+/// The complex transform of a box nx x ns held in a padded rectangle px x ps. The rows that padding leaves empty are
+/// not transformed, and the column pass transposes on the way, so that its memory accesses stay in cache. Immutable;
+/// shared by threads without a lock. Plans are estimated, never measured: the same plan, hence the same bits, each
+/// time.
 template <typename Real>
 class PairTransform {
  public:

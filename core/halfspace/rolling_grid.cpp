@@ -29,13 +29,15 @@ void check_problem(const std::string& where, const RollingProblem& problem, cons
   }
   const auto cells = static_cast<std::size_t>(g.nx) * static_cast<std::size_t>(g.ns);
   const auto size = [&](const char* name, std::size_t have, std::size_t want) {
-    if (have != want) throw out_of_range(where, name, static_cast<double>(have), "", std::to_string(want) + " as the grid says");
+    if (have != want)
+      throw out_of_range(where, name, static_cast<double>(have), "", std::to_string(want) + " as the grid says");
   };
   size("number of pressures", problem.pressure_MPa.size(), cells);
   size("number of rigid slips", problem.slip.size(), 2 * cells);
   if (problem.friction.size() != 1) size("number of friction coefficients", problem.friction.size(), cells);
   if (!problem.area_fraction.empty()) size("number of area fractions", problem.area_fraction.size(), cells);
-  const auto all = [&](const char* name, const std::vector<double>& v, const char* unit, double low, double high, const char* range) {
+  const auto all = [&](const char* name, const std::vector<double>& v, const char* unit, double low, double high,
+                       const char* range) {
     for (const double x : v) {
       if (!(x >= low && x <= high)) throw out_of_range(where, name, x, unit, range);
     }
@@ -71,7 +73,7 @@ RollingBox make_box(const RollingProblem& problem, const SlipStencil& stencil, b
   const auto n = static_cast<std::size_t>(nx) * static_cast<std::size_t>(ns);
   level.in.assign(n, 0);
   level.bound.assign(n, 0);
-  level.edge.assign(n, 0);
+  level.edge.assign(2 * n, 0);
   level.fraction.assign(n, 0);
   level.rigid.assign(2 * n, 0);
   const double unit = problem.elastic.shear_modulus_MPa / (box.unit_traction_MPa * (steady ? 1.0 : grid.dx_mm));
@@ -83,11 +85,11 @@ RollingBox make_box(const RollingProblem& problem, const SlipStencil& stencil, b
       level.in[k] = 1;
       level.bound[k] = bound / box.unit_traction_MPa;
       level.fraction[k] = f;
-      level.edge[k] = (1.0 - f) / f;
       level.rigid[2 * k] = problem.slip[2 * c] * unit;
       level.rigid[2 * k + 1] = problem.slip[2 * c + 1] * unit;
     }
   }
+  set_edge_compliance(level);
   return box;
 }
 
@@ -96,7 +98,7 @@ RollingProblem halved(const RollingProblem& problem) {
   RollingProblem coarse;
   coarse.elastic = problem.elastic;
   coarse.grid = {(fine.nx + 1) / 2, (fine.ns + 1) / 2, fine.x0_mm + 0.5 * fine.dx_mm, fine.s0_mm + 0.5 * fine.ds_mm,
-                 2 * fine.dx_mm, 2 * fine.ds_mm};
+                 2 * fine.dx_mm,    2 * fine.ds_mm};
   const auto cells = static_cast<std::size_t>(coarse.grid.cells());
   coarse.pressure_MPa.assign(cells, 0);
   coarse.slip.assign(2 * cells, 0);
@@ -109,7 +111,8 @@ RollingProblem halved(const RollingProblem& problem) {
       for (int v = 2 * j; v < std::min(2 * j + 2, fine.ns); ++v) {
         for (int u = 2 * i; u < std::min(2 * i + 2, fine.nx); ++u) {
           const std::size_t c = index(u, v, fine.nx);
-          const double f = problem.area_fraction.empty() ? (problem.pressure_MPa[c] > 0 ? 1.0 : 0.0) : problem.area_fraction[c];
+          const double f =
+              problem.area_fraction.empty() ? (problem.pressure_MPa[c] > 0 ? 1.0 : 0.0) : problem.area_fraction[c];
           load += problem.pressure_MPa[c] / 4;
           bound += problem.pressure_MPa[c] * friction_at(problem, c) / 4;
           covered += f / 4;

@@ -44,13 +44,14 @@ void LinearSystem::restrict_to_free(float* v) const {
 void LinearSystem::apply(const float* in, float* out, PairScratch<float>& scratch) const {
   level->op->apply(in, out, scratch);
   const std::size_t n = level->cells();
-  const auto inverse_d = static_cast<float>(1.0 / level->op->own_xx());
+  const auto inverse_d = static_cast<float>(1.0 / level->op->own_xx()), damping = static_cast<float>(sigma);
   for (std::size_t c = 0; c < n; ++c) {
-    const float tx = tangent[2 * c], ts = tangent[2 * c + 1], w = weight[c] * inverse_d;
-    const float x = out[2 * c] + shift[c] * in[2 * c], s = out[2 * c + 1] + shift[c] * in[2 * c + 1];
+    const float tx = tangent[2 * c], ts = tangent[2 * c + 1];
+    const float x = weight[2 * c] * inverse_d * (out[2 * c] + (own[2 * c] + damping) * in[2 * c]);
+    const float s = weight[2 * c + 1] * inverse_d * (out[2 * c + 1] + (own[2 * c + 1] + damping) * in[2 * c + 1]);
     const float along = tx * x + ts * s;
-    out[2 * c] = w * (mask[2 * c] * x + tx * along);
-    out[2 * c + 1] = w * (mask[2 * c + 1] * s + ts * along);
+    out[2 * c] = mask[2 * c] * x + tx * along;
+    out[2 * c + 1] = mask[2 * c + 1] * s + ts * along;
   }
 }
 
@@ -59,7 +60,8 @@ void LinearSystem::precondition(const float* in, float* out, PairScratch<float>&
   const auto d = static_cast<float>(level->op->own_xx());
   const auto inverse_kappa = static_cast<float>(1.0 / (2.0 * level->op->influence_own()));
   const SlipStencil& stencil = level->op->shape().stencil;
-  const auto c0 = static_cast<float>(stencil.here), c1 = static_cast<float>(stencil.ahead), c2 = static_cast<float>(stencil.ahead2);
+  const auto c0 = static_cast<float>(stencil.here), c1 = static_cast<float>(stencil.ahead),
+             c2 = static_cast<float>(stencil.ahead2);
   const auto damping = static_cast<float>(sigma) * inverse_kappa;
   for (int j = 0; j < ns; ++j) {
     float x1 = 0, s1 = 0, x2 = 0, s2 = 0;
@@ -67,13 +69,12 @@ void LinearSystem::precondition(const float* in, float* out, PairScratch<float>&
     for (int i = nx - 1; i >= 0; --i) {
       const std::size_t c = row + static_cast<std::size_t>(i);
       float x = 0, s = 0;
-      if (weight[c] > 0) {
-        const float scale = d / weight[c];
-        const float fx = c1 * x1 - c2 * x2 + scale * in[2 * c], fs = c1 * s1 - c2 * s2 + scale * in[2 * c + 1];
-        const float pivot = 1.0F / (c0 + damping + lambda[c] * inverse_kappa);
+      if (weight[2 * c] > 0) {
+        const float fx = c1 * x1 - c2 * x2 + d / weight[2 * c] * in[2 * c];
+        const float fs = c1 * s1 - c2 * s2 + d / weight[2 * c + 1] * in[2 * c + 1];
         const float tx = tangent[2 * c], ts = tangent[2 * c + 1], along = tx * fx + ts * fs;
-        x = pivot * (mask[2 * c] * fx + tx * along);
-        s = pivot * (mask[2 * c + 1] * fs + ts * along);
+        x = (mask[2 * c] * fx + tx * along) / (c0 + damping + own[2 * c] * inverse_kappa);
+        s = (mask[2 * c + 1] * fs + ts * along) / (c0 + damping + own[2 * c + 1] * inverse_kappa);
       }
       out[2 * c] = x;
       out[2 * c + 1] = s;
@@ -83,16 +84,16 @@ void LinearSystem::precondition(const float* in, float* out, PairScratch<float>&
   level->op->solve_circulant(out, out, scratch);
   const std::size_t n = level->cells();
   for (std::size_t c = 0; c < n; ++c) {
-    const float tx = tangent[2 * c], ts = tangent[2 * c + 1], w = weight[c];
-    const float along = w * (tx * out[2 * c] + ts * out[2 * c + 1]);
-    out[2 * c] = mask[2 * c] * out[2 * c] + tx * along;
-    out[2 * c + 1] = mask[2 * c + 1] * out[2 * c + 1] + ts * along;
+    const float tx = tangent[2 * c], ts = tangent[2 * c + 1];
+    const float x = weight[2 * c] * out[2 * c], s = weight[2 * c + 1] * out[2 * c + 1], along = tx * x + ts * s;
+    out[2 * c] = mask[2 * c] * x + tx * along;
+    out[2 * c + 1] = mask[2 * c + 1] * s + ts * along;
   }
 }
 
-KrylovResult solve_fgmres(const LinearSystem& system, const std::vector<float>& rhs, double tolerance, int max_iterations,
-                          std::vector<float>& basis, std::vector<float>& directions, PairScratch<float>& scratch,
-                          std::vector<float>& solution) {
+KrylovResult solve_fgmres(const LinearSystem& system, const std::vector<float>& rhs, double tolerance,
+                          int max_iterations, std::vector<float>& basis, std::vector<float>& directions,
+                          PairScratch<float>& scratch, std::vector<float>& solution) {
   const std::size_t n = rhs.size();
   const auto m = static_cast<std::size_t>(max_iterations);
   if (basis.size() < (m + 1) * n) basis.resize((m + 1) * n);
@@ -152,7 +153,8 @@ KrylovResult solve_fgmres(const LinearSystem& system, const std::vector<float>& 
     const double pivot = h[i * (m + 1) + i];
     y[i] = pivot != 0 ? sum / pivot : 0;
   }
-  for (std::size_t j = 0; j < k; ++j) add(static_cast<float>(start * y[j]), directions.data() + j * n, solution.data(), n);
+  for (std::size_t j = 0; j < k; ++j)
+    add(static_cast<float>(start * y[j]), directions.data() + j * n, solution.data(), n);
   return result;
 }
 

@@ -7,15 +7,15 @@
 
 namespace runband::halfspace {
 
-/// Rows: stick (A dp + sigma dp) / D; slip omega (t.(A dp) + (lambda + sigma) tau) / D along t, dp = tau t. Vectors hold
-/// pairs on the box; in slip cells they lie along t, outside contact they are zero.
+/// Rows: omega (A dp + (own + sigma) dp) / D; in slip cells along t only, where dp = tau t. Vectors hold pairs on the
+/// box; in slip cells they lie along t, outside contact they are zero.
 struct LinearSystem {
   const RollingLevel* level = nullptr;
-  std::vector<float> mask;       ///< per value: 1 in stick cells, 0 in others
-  std::vector<float> tangent;    ///< per cell a pair: t in slip cells, (0, 0) in others
-  std::vector<float> shift;      ///< per cell: (edge D + sigma + lambda)
-  std::vector<float> weight;     ///< per cell: omega in slip cells, 1 in stick cells, 0 outside
-  std::vector<float> lambda;     ///< per cell: |s| / g in slip cells, 0 in others
+  std::vector<float> mask;     ///< per value: 1 in stick cells, 0 in others
+  std::vector<float> tangent;  ///< per cell a pair: t in slip cells, (0, 0) in others
+  std::vector<float> own;      ///< per value: lambda = |s| / g in slip cells, plus the compliance of a cut cell
+  std::vector<float>
+      weight;  ///< per value: omega = 1 / sqrt(1 + own / kappa), 0 outside; the same for both in slip cells
   double sigma = 0;
 
   /// out = rows applied to in. in != out.
@@ -32,11 +32,11 @@ struct KrylovResult {
   double relative_residual = 1;
 };
 
-/// Right-preconditioned flexible GMRES from zero. `solution` receives M-combined directions. Source: Y. Saad, SIAM J. Sci.
-/// Comput. 14 (1993) 461.
+/// Right-preconditioned flexible GMRES from zero. `solution` receives M-combined directions. Source: Y. Saad, SIAM J.
+/// Sci. Comput. 14 (1993) 461.
 /// @param basis, directions  Scratch, (max_iterations + 1) vectors each.
-KrylovResult solve_fgmres(const LinearSystem& system, const std::vector<float>& rhs, double tolerance, int max_iterations,
-                          std::vector<float>& basis, std::vector<float>& directions, PairScratch<float>& scratch,
-                          std::vector<float>& solution);
+KrylovResult solve_fgmres(const LinearSystem& system, const std::vector<float>& rhs, double tolerance,
+                          int max_iterations, std::vector<float>& basis, std::vector<float>& directions,
+                          PairScratch<float>& scratch, std::vector<float>& solution);
 
 }  // namespace runband::halfspace

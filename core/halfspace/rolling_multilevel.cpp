@@ -26,7 +26,6 @@ bool march_to_steady(const RollingLevel& level, const NewtonOptions& options, co
   shape.stencil = {steady.here, 0, 0};
   RollingLevel step = level;
   step.op = std::make_shared<const RollingOperator>(shape);
-  for (double& e : step.edge) e *= level.op->own_xx() / step.op->own_xx();
   shape.stencil = {0, steady.ahead, steady.ahead2};
   const RollingOperator before(shape);
 
@@ -80,9 +79,10 @@ MultilevelResult solve_multilevel(const RollingLevel& finest, const NewtonOption
   if (!r.converged) {
     result.used_fallback = true;
     if (!march_to_steady(finest, options, progress, scratch, p, slip, result)) {
-      throw NotConverged("rolling contact on " + std::to_string(finest.nx()) + " x " + std::to_string(finest.ns()) + " cells",
-                         result.steps, result.residual,
-                         "try fewer cells, a looser tolerance, or the simplified theory; check pressure and friction for jumps.");
+      throw NotConverged(
+          "rolling contact on " + std::to_string(finest.nx()) + " x " + std::to_string(finest.ns()) + " cells",
+          result.steps, result.residual,
+          "try fewer cells, a looser tolerance, or the simplified theory; check pressure and friction for jumps.");
     }
   }
   result.traction = std::move(p);

@@ -26,25 +26,30 @@ std::size_t linearise(const RollingLevel& level, const std::vector<double>& p, c
     const SlipState now = slips ? SlipState::slip : SlipState::stick;
     changed += now != state[c] ? 1U : 0U;
     state[c] = now;
-    double tx = 0, ts = 0, lambda = 0, omega = 1;
+    const double ex = level.edge[2 * c], es = level.edge[2 * c + 1];
+    double tx = 0, ts = 0, own_x = ex, own_s = es, wx = 1.0 / std::sqrt(1.0 + ex / kappa),
+           ws = 1.0 / std::sqrt(1.0 + es / kappa);
     if (slips) {
       tx = -ps / size;
       ts = px / size;
-      lambda = std::max(0.0, -(sx * px + ss * ps) / (size * g));
-      omega = 1.0 / std::sqrt(1.0 + lambda / kappa);
-      const double along = -omega * (tx * sx + ts * ss) / d;
+      const double lambda = std::max(0.0, -(sx * px + ss * ps) / (size * g));
+      own_x += lambda;
+      own_s += lambda;
+      wx = ws = 1.0 / std::sqrt(1.0 + (lambda + tx * tx * ex + ts * ts * es) / kappa);
+      const double along = -wx * (tx * sx + ts * ss) / d;
       rhs[2 * c] = static_cast<float>(along * tx);
       rhs[2 * c + 1] = static_cast<float>(along * ts);
     } else {
-      rhs[2 * c] = static_cast<float>(-sx / d);
-      rhs[2 * c + 1] = static_cast<float>(-ss / d);
+      rhs[2 * c] = static_cast<float>(-wx * sx / d);
+      rhs[2 * c + 1] = static_cast<float>(-ws * ss / d);
     }
     system.mask[2 * c] = system.mask[2 * c + 1] = slips ? 0.0F : 1.0F;
     system.tangent[2 * c] = static_cast<float>(tx);
     system.tangent[2 * c + 1] = static_cast<float>(ts);
-    system.lambda[c] = static_cast<float>(lambda);
-    system.shift[c] = static_cast<float>(level.edge[c] * d + sigma + lambda);
-    system.weight[c] = static_cast<float>(omega);
+    system.own[2 * c] = static_cast<float>(own_x);
+    system.own[2 * c + 1] = static_cast<float>(own_s);
+    system.weight[2 * c] = static_cast<float>(wx);
+    system.weight[2 * c + 1] = static_cast<float>(ws);
   }
   return changed;
 }
@@ -71,11 +76,8 @@ void slip_of(const RollingLevel& level, const std::vector<double>& p, PairScratc
              std::vector<double>& slip) {
   slip.resize(p.size());
   level.op->apply(p.data(), slip.data(), scratch);
-  const double d = level.op->own_xx();
-  for (std::size_t c = 0; c < level.cells(); ++c) {
-    const double inside = level.in[c] != 0 ? 1.0 : 0.0, extra = level.edge[c] * d;
-    slip[2 * c] = inside * (slip[2 * c] + level.rigid[2 * c] + extra * p[2 * c]);
-    slip[2 * c + 1] = inside * (slip[2 * c + 1] + level.rigid[2 * c + 1] + extra * p[2 * c + 1]);
+  for (std::size_t i = 0; i < p.size(); ++i) {
+    slip[i] = level.in[i / 2] != 0 ? slip[i] + level.rigid[i] + level.edge[i] * p[i] : 0.0;
   }
 }
 
@@ -109,9 +111,8 @@ NewtonResult solve_newton(const RollingLevel& level, const NewtonOptions& option
   system.level = &level;
   system.mask.assign(2 * n, 0.0F);
   system.tangent.assign(2 * n, 0.0F);
-  system.lambda.assign(n, 0.0F);
-  system.shift.assign(n, 0.0F);
-  system.weight.assign(n, 0.0F);
+  system.own.assign(2 * n, 0.0F);
+  system.weight.assign(2 * n, 0.0F);
   scratch.rhs.assign(2 * n, 0.0F);
   std::vector<SlipState> state(n, SlipState::open);
   std::vector<double> best_p = p;
@@ -130,8 +131,8 @@ NewtonResult solve_newton(const RollingLevel& level, const NewtonOptions& option
     double tolerance = std::min(forcing, 0.1);
     if (static_cast<double>(changed) > 0.002 * in_contact) tolerance = 0.15;
     if (stalled >= 2) tolerance = std::min(tolerance, stalled >= 6 ? 0.003 : 0.02);
-    const KrylovResult krylov = solve_fgmres(system, scratch.rhs, tolerance, kMaxKrylov, scratch.basis, scratch.directions,
-                                             scratch.fast, scratch.work);
+    const KrylovResult krylov = solve_fgmres(system, scratch.rhs, tolerance, kMaxKrylov, scratch.basis,
+                                             scratch.directions, scratch.fast, scratch.work);
     result.convolutions += krylov.iterations * inner_cost;
     update(level, state, scratch.work, p);
     slip_of(level, p, scratch.fine, slip);

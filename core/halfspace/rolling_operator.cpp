@@ -13,13 +13,15 @@ struct InfluenceTable {
   std::vector<double> xx, ss, xs;
 
   std::size_t at(int i, int j) const {
-    return static_cast<std::size_t>(std::abs(j)) * static_cast<std::size_t>(count_x) + static_cast<std::size_t>(std::abs(i));
+    return static_cast<std::size_t>(std::abs(j)) * static_cast<std::size_t>(count_x) +
+           static_cast<std::size_t>(std::abs(i));
   }
   // K_xx and K_ss are even in both offsets, K_xs odd in both.
   double cross(int i, int j) const { return ((i < 0) != (j < 0) ? -1.0 : 1.0) * xs[at(i, j)]; }
 };
 
-/// The antiderivatives at the corners of the cells, differenced twice. Source: Kalker 1990, ch. 3; METHODS: J2 = [y ln(x
+/// The antiderivatives at the corners of the cells, differenced twice. Source: Kalker 1990, ch. 3; METHODS: J2 = [y
+/// ln(x
 /// + r)] = int x^2/r^3, J3 = [x ln(y + r)] = int y^2/r^3, J1 = J2 + J3 = int 1/r, J4 = [-r] = int x y / r^3.
 InfluenceTable influence_table(int count_x, int count_s, double ratio, double nu) {
   const auto nx = static_cast<std::size_t>(count_x), ns = static_cast<std::size_t>(count_s);
@@ -78,7 +80,8 @@ RollingOperator::RollingOperator(const OperatorShape& shape) : shape_(shape) {
         const double xx = here * k.xx[c0] - ahead * k.xx[c1] + ahead2 * k.xx[c2];
         const double ss = here * k.ss[c0] - ahead * k.ss[c1] + ahead2 * k.ss[c2];
         const double xs = here * k.cross(i, j) - ahead * k.cross(i + 1, j) + ahead2 * k.cross(i + 2, j);
-        const std::size_t to = static_cast<std::size_t>(wrapped(j, ps)) * full->stride() + static_cast<std::size_t>(wrapped(i, px));
+        const std::size_t to =
+            static_cast<std::size_t>(wrapped(j, ps)) * full->stride() + static_cast<std::size_t>(wrapped(i, px));
         a.data()[to] = 0.5 * scale * (xx + ss);
         b.data()[to] = scale * std::complex<double>(0.5 * (xx - ss), xs);
       }
@@ -97,7 +100,8 @@ RollingOperator::RollingOperator(const OperatorShape& shape) : shape_(shape) {
     for (int j = -(ps / 2); j <= ps / 2; ++j) {
       for (int i = -(px / 2); i <= px / 2; ++i) {
         const bool edge = 2 * std::abs(i) == px || 2 * std::abs(j) == ps;  // the odd part vanishes there
-        const std::size_t to = static_cast<std::size_t>(wrapped(j, ps)) * full->stride() + static_cast<std::size_t>(wrapped(i, px));
+        const std::size_t to =
+            static_cast<std::size_t>(wrapped(j, ps)) * full->stride() + static_cast<std::size_t>(wrapped(i, px));
         a.data()[to] = {k.xx[k.at(i, j)], k.ss[k.at(i, j)]};
         b.data()[to] = edge ? 0.0 : k.cross(i, j);
       }
@@ -111,7 +115,8 @@ RollingOperator::RollingOperator(const OperatorShape& shape) : shape_(shape) {
     double floor = 0;
     for (int kx = 0; kx < px; ++kx) {
       for (int ks = 0; ks < ps; ++ks) {
-        const auto v = both.data()[static_cast<std::size_t>(kx) * full->spectrum_stride() + static_cast<std::size_t>(ks)];
+        const auto v =
+            both.data()[static_cast<std::size_t>(kx) * full->spectrum_stride() + static_cast<std::size_t>(ks)];
         floor = std::max({floor, v.real(), v.imag()});
       }
     }

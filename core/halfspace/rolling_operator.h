@@ -25,8 +25,8 @@ struct OperatorShape {
 };
 
 /// s = A p: slip (times dx) of each cell from the tractions of all, in the units above. Immutable and shareable.
-/// A(d) = here K(d) - ahead K(d + dx) + ahead2 K(d + 2 dx), K the integrals of Cerruti's solution over a cell for the two
-/// like bodies together. Source: J. J. Kalker, Three-Dimensional Elastic Bodies in Rolling Contact (1990), ch. 4.
+/// A(d) = here K(d) - ahead K(d + dx) + ahead2 K(d + 2 dx), K the integrals of Cerruti's solution over a cell for the
+/// two like bodies together. Source: J. J. Kalker, Three-Dimensional Elastic Bodies in Rolling Contact (1990), ch. 4.
 class RollingOperator {
  public:
   explicit RollingOperator(const OperatorShape& shape);
@@ -42,11 +42,13 @@ class RollingOperator {
   }
 
   std::size_t points() const { return fast_.points(); }  ///< of the padded transform
-  double own_xx() const { return own_xx_; }  ///< A_xx(0)
+  double own_xx() const { return own_xx_; }              ///< A_xx(0)
   double own_ss() const { return own_ss_; }
   double influence_own() const { return influence_own_; }  ///< the mean of K_xx(0) and K_ss(0)
   /// Cost of one circulant solve in units of one float convolution.
-  double circulant_cost() const { return static_cast<double>(circulant_.points()) / static_cast<double>(fast_.points()); }
+  double circulant_cost() const {
+    return static_cast<double>(circulant_.points()) / static_cast<double>(fast_.points());
+  }
 
  private:
   OperatorShape shape_;
