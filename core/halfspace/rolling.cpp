@@ -120,24 +120,6 @@ RollingResult solve_and_extrapolate(const RollingProblem& problem, const Rolling
 
 }  // namespace
 
-ElasticPair elastic_pair(const MaterialPair& material) {
-  const double g1 = material.wheel.shear_modulus_MPa(), g2 = material.rail.shear_modulus_MPa();
-  const double nu1 = material.wheel.poisson_ratio, nu2 = material.rail.poisson_ratio;
-  ElasticPair pair;
-  pair.shear_modulus_MPa = 2.0 / (1.0 / g1 + 1.0 / g2);
-  pair.poisson_ratio = 0.5 * pair.shear_modulus_MPa * (nu1 / g1 + nu2 / g2);
-  pair.coupling = 0.25 * pair.shear_modulus_MPa * ((1 - 2 * nu1) / g1 - (1 - 2 * nu2) / g2);
-  return pair;
-}
-
-std::vector<Caution> elastic_pair_cautions(const ElasticPair& pair) {
-  if (std::abs(pair.coupling) <= 0.01) return {};
-  return {
-      {"materials_not_alike", Severity::caution,
-       "Wheel and rail differ in elasticity, so that pressure alone makes the surfaces slip; the half-space solution "
-       "leaves that out. Expect creep forces wrong by a few per cent of the friction limit at small creepage."}};
-}
-
 std::vector<double> rigid_slip(const Grid& grid, double longitudinal, double lateral, double spin_per_mm) {
   std::vector<double> w;
   w.reserve(2 * static_cast<std::size_t>(grid.cells()));

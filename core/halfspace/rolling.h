@@ -4,24 +4,11 @@
 #include <cstdint>
 #include <vector>
 
-#include "core/base/material.h"
 #include "core/base/progress.h"
 #include "core/base/quantities.h"
+#include "core/halfspace/elastic.h"
 
 namespace runband::halfspace {
-
-/// Elastic constants of two bodies as the tangential problem sees them.
-struct ElasticPair {
-  double shear_modulus_MPa = 0;  ///< G: 1/G = (1/G1 + 1/G2) / 2
-  double poisson_ratio = 0;      ///< nu: nu/G = (nu1/G1 + nu2/G2) / 2
-  /// Kalker's K = G/4 ((1 - 2 nu1)/G1 - (1 - 2 nu2)/G2): zero for quasi-identical bodies, for which normal and
-  /// tangential problem are exactly independent.
-  double coupling = 0;
-};
-/// @source J. J. Kalker, Three-Dimensional Elastic Bodies in Rolling Contact (1990), eq. 1.44.
-ElasticPair elastic_pair(const MaterialPair& material);
-/// The caution a reader must see when the pair is not quasi-identical (|coupling| > 0.01); empty otherwise.
-std::vector<Caution> elastic_pair_cautions(const ElasticPair& pair);
 
 /// Rigid slip of constant creepages: (xi - phi s, eta + phi x) at each cell centre, ns x nx pairs.
 /// @param longitudinal, lateral  Velocity of the wheel's surface minus the rail's, over V. Unit 1.

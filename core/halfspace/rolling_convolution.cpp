@@ -4,6 +4,8 @@
 
 #include <algorithm>
 #include <array>
+#include <bit>
+#include <cstring>
 #include <map>
 #include <mutex>
 #include <tuple>
@@ -25,7 +27,7 @@ template <typename Real>
 void* make_plan(int length, int howmany, int in_stride, int in_distance, int out_stride, int out_distance,
                 bool in_place, std::size_t in_size, std::size_t out_size, int sign) {
   const int n[1] = {length};
-  ComplexBuffer<Real> in(in_size), out(in_place ? 1 : out_size);
+  ComplexBuffer<Real> in(in_size, false), out(in_place ? 1 : out_size, false);
   std::complex<Real>* to = in_place ? in.data() : out.data();
   if constexpr (std::is_same_v<Real, float>) {
     auto* a = reinterpret_cast<fftwf_complex*>(in.data());
@@ -62,17 +64,67 @@ void destroy_plan(void* plan) {
 
 }  // namespace
 
+namespace {
+
+/// Freed buffers of one thread, kept by size: a solve makes and drops a dozen, and giving them back to the system each
+/// time costs as much as transforming them.
+class BufferPool {
+ public:
+  BufferPool() = default;
+  BufferPool(const BufferPool&) = delete;
+  BufferPool& operator=(const BufferPool&) = delete;
+  ~BufferPool() {
+    for (auto& shelf : shelves_) {
+      for (void* p : shelf) fftw_free(p);
+    }
+  }
+  /// Of at least `bytes`, content undefined.
+  void* take(std::size_t bytes) {
+    auto& shelf = shelves_[shelf_of(bytes)];
+    if (shelf.empty()) {
+      void* p = fftw_malloc(std::size_t{1} << shelf_of(bytes));
+      if (p == nullptr) throw std::bad_alloc();
+      return p;
+    }
+    void* p = shelf.back();
+    shelf.pop_back();
+    held_ -= std::size_t{1} << shelf_of(bytes);
+    return p;
+  }
+  void give(void* p, std::size_t bytes) {
+    const std::size_t size = std::size_t{1} << shelf_of(bytes);
+    if (held_ + size > kMostHeld) return fftw_free(p);
+    held_ += size;
+    shelves_[shelf_of(bytes)].push_back(p);
+  }
+
+ private:
+  static constexpr std::size_t kMostHeld = std::size_t{16} << 20;
+  static std::size_t shelf_of(std::size_t bytes) {
+    return std::max<std::size_t>(8, static_cast<std::size_t>(std::bit_width(bytes - 1)));
+  }
+  std::array<std::vector<void*>, 48> shelves_;
+  std::size_t held_ = 0;
+};
+
+BufferPool& pool() {
+  thread_local BufferPool p;
+  return p;
+}
+
+}  // namespace
+
 template <typename Real>
-ComplexBuffer<Real>::ComplexBuffer(std::size_t n) : size_(n) {
-  auto* raw = static_cast<std::complex<Real>*>(fftw_malloc(std::max<std::size_t>(n, 1) * sizeof(std::complex<Real>)));
-  if (raw == nullptr) throw std::bad_alloc();
-  std::fill(raw, raw + n, std::complex<Real>(0));
-  data_.reset(raw);
+ComplexBuffer<Real>::ComplexBuffer(std::size_t n, bool zero) : size_(n) {
+  const std::size_t bytes = std::max<std::size_t>(n, 1) * sizeof(std::complex<Real>);
+  auto* raw = static_cast<std::complex<Real>*>(pool().take(bytes));
+  if (zero) std::memset(static_cast<void*>(raw), 0, bytes);
+  data_ = {raw, Free{bytes}};
 }
 
 template <typename Real>
 void ComplexBuffer<Real>::Free::operator()(std::complex<Real>* p) const {
-  fftw_free(p);
+  pool().give(p, bytes);
 }
 
 int pair_transform_length(int n) {
@@ -142,7 +194,7 @@ void PairTransform<Real>::backward(std::complex<Real>* spectrum, std::complex<Re
 template <typename Real>
 PairConvolution<Real>::PairConvolution(std::shared_ptr<const PairTransform<Real>> transform, int nx, int ns,
                                        const ComplexBuffer<double>& alpha, const ComplexBuffer<double>& beta)
-    : transform_(std::move(transform)), nx_(nx), ns_(ns), alpha_(alpha.size()), beta_(beta.size()) {
+    : transform_(std::move(transform)), nx_(nx), ns_(ns), alpha_(alpha.size(), false), beta_(beta.size(), false) {
   for (std::size_t i = 0; i < alpha.size(); ++i) {
     alpha_.data()[i] = static_cast<std::complex<Real>>(alpha.data()[i]);
     beta_.data()[i] = static_cast<std::complex<Real>>(beta.data()[i]);
@@ -151,10 +203,53 @@ PairConvolution<Real>::PairConvolution(std::shared_ptr<const PairTransform<Real>
 
 namespace {
 
+// A vector register of complex numbers: four of float, two of double.
+template <typename Real>
+struct Packed;
+
+template <>
+struct Packed<float> {
+  static constexpr int kCount = 4;
+  typedef float V __attribute__((vector_size(32)));
+  static V reversed(V v) { return __builtin_shufflevector(v, v, 6, 7, 4, 5, 2, 3, 0, 1); }
+  static V swapped(V v) { return __builtin_shufflevector(v, v, 1, 0, 3, 2, 5, 4, 7, 6); }
+  static V real(V v) { return __builtin_shufflevector(v, v, 0, 0, 2, 2, 4, 4, 6, 6); }
+  static V imag(V v) { return __builtin_shufflevector(v, v, 1, 1, 3, 3, 5, 5, 7, 7); }
+  static V minus_plus() { return V{-1, 1, -1, 1, -1, 1, -1, 1}; }
+};
+
+template <>
+struct Packed<double> {
+  static constexpr int kCount = 2;
+  typedef double V __attribute__((vector_size(32)));
+  static V reversed(V v) { return __builtin_shufflevector(v, v, 2, 3, 0, 1); }
+  static V swapped(V v) { return __builtin_shufflevector(v, v, 1, 0, 3, 2); }
+  static V real(V v) { return __builtin_shufflevector(v, v, 0, 0, 2, 2); }
+  static V imag(V v) { return __builtin_shufflevector(v, v, 1, 1, 3, 3); }
+  static V minus_plus() { return V{-1, 1, -1, 1}; }
+};
+
+template <typename Real>
+typename Packed<Real>::V load(const Real* p) {
+  typename Packed<Real>::V v;
+  std::memcpy(&v, p, sizeof v);
+  return v;
+}
+
+template <typename Real>
+void store(Real* p, typename Packed<Real>::V v) {
+  std::memcpy(p, &v, sizeof v);
+}
+
+/// a z + b conj(y)
+template <typename P>
+typename P::V combine(typename P::V a, typename P::V z, typename P::V b, typename P::V y) {
+  return P::real(a) * z + P::minus_plus() * (P::imag(a) * P::swapped(z) - P::real(b) * y) + P::imag(b) * P::swapped(y);
+}
+
 // y(k) = alpha(k) z(k) + beta(k) conj(z(-k)) for the two rows kx and -kx at once, in place.
 template <typename Real>
-void multiply_rows(const Real* __restrict a0, const Real* __restrict b0, const Real* __restrict a1,
-                   const Real* __restrict b1, Real* z0, Real* z1, int ps) {
+void multiply_rows(const Real* a0, const Real* b0, const Real* a1, const Real* b1, Real* z0, Real* z1, int ps) {
   const auto one = [&](int k, int m) {
     const Real zr = z0[2 * k], zi = z0[2 * k + 1];
     const Real yr = z1[2 * m], yi = z1[2 * m + 1];
@@ -163,8 +258,16 @@ void multiply_rows(const Real* __restrict a0, const Real* __restrict b0, const R
     z1[2 * m] = a1[2 * m] * yr - a1[2 * m + 1] * yi + b1[2 * m] * zr + b1[2 * m + 1] * zi;
     z1[2 * m + 1] = a1[2 * m] * yi + a1[2 * m + 1] * yr - b1[2 * m] * zi + b1[2 * m + 1] * zr;
   };
+  using P = Packed<Real>;
   one(0, 0);
-  for (int k = 1; k < ps; ++k) one(k, ps - k);
+  int k = 1;
+  for (; k + P::kCount <= ps; k += P::kCount) {
+    const int m = ps - k - (P::kCount - 1);
+    const auto z = load(z0 + 2 * k), y = load(z1 + 2 * m);
+    store(z0 + 2 * k, combine<P>(load(a0 + 2 * k), z, load(b0 + 2 * k), P::reversed(y)));
+    store(z1 + 2 * m, combine<P>(load(a1 + 2 * m), y, load(b1 + 2 * m), P::reversed(z)));
+  }
+  for (; k < ps; ++k) one(k, ps - k);
 }
 
 template <typename Real>
@@ -186,8 +289,8 @@ template <typename Real>
 void PairConvolution<Real>::apply(const Real* in, Real* out, PairScratch<Real>& scratch) const {
   const auto& t = *transform_;
   const int px = t.px(), ps = t.ps();
-  if (scratch.rectangle.size() < t.rectangle_size()) scratch.rectangle = ComplexBuffer<Real>(t.rectangle_size());
-  if (scratch.spectrum.size() < t.spectrum_size()) scratch.spectrum = ComplexBuffer<Real>(t.spectrum_size());
+  if (scratch.rectangle.size() < t.rectangle_size()) scratch.rectangle = ComplexBuffer<Real>(t.rectangle_size(), false);
+  if (scratch.spectrum.size() < t.spectrum_size()) scratch.spectrum = ComplexBuffer<Real>(t.spectrum_size(), false);
   auto* r = reinterpret_cast<Real*>(scratch.rectangle.data());
   const std::size_t row = 2 * t.stride(), box_row = 2 * static_cast<std::size_t>(nx_);
   for (int j = 0; j < ps; ++j) {

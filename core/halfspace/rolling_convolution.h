@@ -50,13 +50,14 @@ template <typename Real>
 class ComplexBuffer {
  public:
   ComplexBuffer() = default;
-  explicit ComplexBuffer(std::size_t n);
+  explicit ComplexBuffer(std::size_t n, bool zero = true);
   std::complex<Real>* data() { return data_.get(); }
   const std::complex<Real>* data() const { return data_.get(); }
   std::size_t size() const { return size_; }
 
  private:
   struct Free {
+    std::size_t bytes = 0;
     void operator()(std::complex<Real>* p) const;
   };
   std::unique_ptr<std::complex<Real>[], Free> data_;

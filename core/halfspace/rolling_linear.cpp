@@ -92,12 +92,15 @@ void LinearSystem::precondition(const float* in, float* out, PairScratch<float>&
 }
 
 KrylovResult solve_fgmres(const LinearSystem& system, const std::vector<float>& rhs, double tolerance,
-                          int max_iterations, std::vector<float>& basis, std::vector<float>& directions,
-                          PairScratch<float>& scratch, std::vector<float>& solution) {
+                          int max_iterations, KrylovScratch& vectors, PairScratch<float>& scratch,
+                          std::vector<float>& solution) {
   const std::size_t n = rhs.size();
   const auto m = static_cast<std::size_t>(max_iterations);
-  if (basis.size() < (m + 1) * n) basis.resize((m + 1) * n);
-  if (directions.size() < m * n) directions.resize(m * n);
+  const auto vector = [n](std::vector<std::vector<float>>& all, std::size_t k) {
+    if (all.size() <= k) all.resize(k + 1);
+    if (all[k].size() < n) all[k].resize(n);
+    return all[k].data();
+  };
   solution.assign(n, 0.0F);
   const double start = std::sqrt(dot(rhs.data(), rhs.data(), n));
   KrylovResult result;
@@ -106,19 +109,20 @@ KrylovResult solve_fgmres(const LinearSystem& system, const std::vector<float>& 
     return result;
   }
   const auto inverse_start = static_cast<float>(1.0 / start);
-  for (std::size_t i = 0; i < n; ++i) basis[i] = rhs[i] * inverse_start;
+  float* first = vector(vectors.basis, 0);
+  for (std::size_t i = 0; i < n; ++i) first[i] = rhs[i] * inverse_start;
 
   std::vector<double> h((m + 1) * m, 0.0), cosine(m), sine(m), g(m + 1, 0.0);  // h column-major
   g[0] = 1;
   std::size_t k = 0;
   for (; k < m; ++k) {
-    float* z = directions.data() + k * n;
-    float* w = basis.data() + (k + 1) * n;
-    system.precondition(basis.data() + k * n, z, scratch);
+    float* z = vector(vectors.directions, k);
+    float* w = vector(vectors.basis, k + 1);
+    system.precondition(vectors.basis[k].data(), z, scratch);
     system.apply(z, w, scratch);
     double* column = h.data() + k * (m + 1);
     for (std::size_t i = 0; i <= k; ++i) {
-      const float* v = basis.data() + i * n;
+      const float* v = vectors.basis[i].data();
       column[i] = dot(w, v, n);
       add(static_cast<float>(-column[i]), v, w, n);
     }
@@ -154,7 +158,7 @@ KrylovResult solve_fgmres(const LinearSystem& system, const std::vector<float>& 
     y[i] = pivot != 0 ? sum / pivot : 0;
   }
   for (std::size_t j = 0; j < k; ++j)
-    add(static_cast<float>(start * y[j]), directions.data() + j * n, solution.data(), n);
+    add(static_cast<float>(start * y[j]), vectors.directions[j].data(), solution.data(), n);
   return result;
 }
 

@@ -27,6 +27,11 @@ struct LinearSystem {
   void restrict_to_free(float* v) const;
 };
 
+/// Vectors of one Krylov iteration, made as they are needed and kept for the next.
+struct KrylovScratch {
+  std::vector<std::vector<float>> basis, directions;
+};
+
 struct KrylovResult {
   int iterations = 0;
   double relative_residual = 1;
@@ -34,9 +39,8 @@ struct KrylovResult {
 
 /// Right-preconditioned flexible GMRES from zero. `solution` receives M-combined directions. Source: Y. Saad, SIAM J.
 /// Sci. Comput. 14 (1993) 461.
-/// @param basis, directions  Scratch, (max_iterations + 1) vectors each.
 KrylovResult solve_fgmres(const LinearSystem& system, const std::vector<float>& rhs, double tolerance,
-                          int max_iterations, std::vector<float>& basis, std::vector<float>& directions,
-                          PairScratch<float>& scratch, std::vector<float>& solution);
+                          int max_iterations, KrylovScratch& vectors, PairScratch<float>& scratch,
+                          std::vector<float>& solution);
 
 }  // namespace runband::halfspace

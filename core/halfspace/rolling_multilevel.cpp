@@ -9,6 +9,7 @@ namespace {
 
 constexpr int kCoarsestCells = 27;
 constexpr double kCoarseTolerance = 1e-3;
+constexpr std::size_t kKeptCells = 128 * 128;
 
 double squared(const std::vector<double>& v) {
   double sum = 0;
@@ -60,7 +61,10 @@ MultilevelResult solve_multilevel(const RollingLevel& finest, const NewtonOption
 
   MultilevelResult result;
   result.grids = static_cast<int>(coarser.size()) + 1;
-  RollingScratch scratch;
+  // One per thread and kept: fresh memory costs more than a coarse solve. Released when a large problem is done.
+  thread_local RollingScratch kept;
+  RollingScratch local;
+  RollingScratch& scratch = finest.cells() <= kKeptCells ? kept : local;
   std::vector<double> p = simplified_start(current()), slip;
   const auto finest_points = static_cast<double>(finest.op->points());
   const NewtonOptions rough{std::max(kCoarseTolerance, options.tolerance), options.max_steps};

@@ -3,8 +3,6 @@
 #include <algorithm>
 #include <cmath>
 
-#include "core/halfspace/rolling_linear.h"
-
 namespace runband::halfspace {
 namespace {
 
@@ -21,7 +19,7 @@ std::size_t linearise(const RollingLevel& level, const std::vector<double>& p, c
   for (std::size_t c = 0; c < n; ++c) {
     if (level.in[c] == 0) continue;
     const double px = p[2 * c], ps = p[2 * c + 1], sx = slip[2 * c], ss = slip[2 * c + 1], g = level.bound[c];
-    const double size = std::hypot(px, ps);
+    const double size = std::sqrt(px * px + ps * ps);
     const bool slips = size >= g * kSaturated && sx * px + ss * ps < 0;
     const SlipState now = slips ? SlipState::slip : SlipState::stick;
     changed += now != state[c] ? 1U : 0U;
@@ -60,7 +58,7 @@ void update(const RollingLevel& level, const std::vector<SlipState>& state, cons
   for (std::size_t c = 0; c < level.cells(); ++c) {
     if (level.in[c] == 0) continue;
     double x = p[2 * c] + static_cast<double>(dp[2 * c]), s = p[2 * c + 1] + static_cast<double>(dp[2 * c + 1]);
-    const double size = std::hypot(x, s), g = level.bound[c];
+    const double size = std::sqrt(x * x + s * s), g = level.bound[c];
     if ((state[c] == SlipState::slip && size > 0) || size > g) {
       x *= g / size;
       s *= g / size;
@@ -131,10 +129,10 @@ NewtonResult solve_newton(const RollingLevel& level, const NewtonOptions& option
     double tolerance = std::min(forcing, 0.1);
     if (static_cast<double>(changed) > 0.002 * in_contact) tolerance = 0.15;
     if (stalled >= 2) tolerance = std::min(tolerance, stalled >= 6 ? 0.003 : 0.02);
-    const KrylovResult krylov = solve_fgmres(system, scratch.rhs, tolerance, kMaxKrylov, scratch.basis,
-                                             scratch.directions, scratch.fast, scratch.work);
+    const KrylovResult krylov =
+        solve_fgmres(system, scratch.rhs, tolerance, kMaxKrylov, scratch.krylov, scratch.fast, scratch.step);
     result.convolutions += krylov.iterations * inner_cost;
-    update(level, state, scratch.work, p);
+    update(level, state, scratch.step, p);
     slip_of(level, p, scratch.fine, slip);
     result.convolutions += kOuterCost;
     ++result.steps;

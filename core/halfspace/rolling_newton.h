@@ -4,7 +4,7 @@
 #include <vector>
 
 #include "core/base/progress.h"
-#include "core/halfspace/rolling_level.h"
+#include "core/halfspace/rolling_linear.h"
 
 namespace runband::halfspace {
 
@@ -24,7 +24,8 @@ struct NewtonResult {
 struct RollingScratch {
   PairScratch<double> fine;
   PairScratch<float> fast;
-  std::vector<float> basis, directions, work, rhs;
+  KrylovScratch krylov;
+  std::vector<float> step, rhs;
 };
 
 /// Improves `p` (pairs, zero outside contact) in place until the tolerance or the step limit; on return `slip` holds

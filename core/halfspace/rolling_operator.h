@@ -51,6 +51,10 @@ class RollingOperator {
   }
 
  private:
+  struct Influence;
+  void make_convolutions(const Influence& k);
+  void make_circulant(const Influence& k, int px, int ps);
+
   OperatorShape shape_;
   PairConvolution<double> fine_;
   PairConvolution<float> fast_;
