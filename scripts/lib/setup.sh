@@ -64,7 +64,7 @@ build() {
   set +e
   ninja -C "$dir" "$@" </dev/null 2>&1 | while IFS= read -r line; do
     case $line in
-      "ninja: Entering directory"*) ;;
+      "ninja: Entering directory"* | "-- "*) ;;
       "["*"/"*"] "*)
         case $line in
           *" Building "*" object "*)
