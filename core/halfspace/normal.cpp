@@ -278,6 +278,25 @@ std::vector<double> gap_on(const NormalProblem& problem, const Grid& grid) {
   return gap;
 }
 
+// With a hardness the contact is at least load over hardness wide: doubles the first box until its surface can carry
+// the load, or until that no longer helps because the bodies end.
+Grid with_room_to_yield(const NormalProblem& problem, Grid grid) {
+  constexpr double kRoom = 1.5;
+  double before = 0;
+  for (int k = 0; k < 40; ++k) {
+    const std::vector<double> gap = gap_on(problem, grid);
+    const auto cells = std::count_if(gap.begin(), gap.end(), [](double h) { return std::isfinite(h); });
+    const double capacity = static_cast<double>(cells) * grid.dx_mm * grid.ds_mm * *problem.hardness_MPa;
+    if (capacity >= kRoom * *problem.load_N || capacity < 1.05 * before) break;
+    before = capacity;
+    Box box = outline(grid);
+    const double wide = 0.5 * (box.x_max_mm - box.x_min_mm), high = 0.5 * (box.s_max_mm - box.s_min_mm);
+    box = {box.x_min_mm - wide, box.x_max_mm + wide, box.s_min_mm - high, box.s_max_mm + high};
+    grid = grid_over(box, 2 * grid.dx_mm, 2 * grid.ds_mm, problem.limits);
+  }
+  return grid;
+}
+
 NormalSolution finish(const Run& run, const Grid& grid, LevelState&& state) {
   NormalSolution solution;
   solution.grid = grid;
@@ -325,6 +344,7 @@ NormalSolution solve_normal(const NormalProblem& problem, const NormalOptions& o
   double ratio = options.cell_ratio.value_or(ratio_for(box.x_max_mm - box.x_min_mm, box.s_max_mm - box.s_min_mm));
   double ds = std::max((box.x_max_mm - box.x_min_mm) / ratio, box.s_max_mm - box.s_min_mm) / options.coarse_cells;
   Grid grid = grid_over(box, ds * ratio, ds, problem.limits);
+  if (problem.hardness_MPa && problem.load_N) grid = with_room_to_yield(problem, grid);
   std::vector<double> pressure;  // start on the next grid
   Grid old_grid;
   bool final = false;

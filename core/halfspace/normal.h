@@ -72,7 +72,7 @@ struct NormalSolution {
 /// @accuracy residual <= tolerance, load to 1e-12; discretisation error in tests/convergence/normal_order_test.cpp.
 /// Deterministic: the same bits on the same machine, from any thread.
 /// @source Polonsky & Keer, Wear 231 (1999) 206 (problem); Hintermueller, Ito & Kunisch, SIAM J. Optim. 13 (2002) 865
-///         (primal-dual active set); Vollebregt, J. Tribol. 136 (2014) 021403 (FFT preconditioner).
+///         (primal-dual active set); Vollebregt, J. Tribol. 136 (2014) 021403 (FFT preconditioner) (memory).
 NormalSolution solve_normal(const NormalProblem& problem, const NormalOptions& options = {}, const Progress& = {});
 
 /// The same on a grid that stays as it is (no box finding, no refinement), the gap given as values [j * nx + i].

@@ -176,22 +176,35 @@ std::shared_ptr<const NormalKernel> NormalKernel::of(int nx, int ns, double rati
   return made;
 }
 
-bool rescale(std::vector<double>& q, double sum, double cap) {
+bool rescale(std::vector<double>& q, double sum, double cap, const std::vector<double>& order) {
+  const double enough = 1e-14 * sum;
   for (int pass = 0; pass < 60; ++pass) {
     const double total = ordered_sum<double>(q.size(), [&](std::size_t k) { return q[k]; });
-    if (!(total > 0)) return false;
-    if (std::abs(total - sum) <= 1e-14 * sum) return true;
-    double factor = sum / total;
-    if (factor > 1 && std::isfinite(cap)) {  // only cells below the cap can rise
-      double capped = 0;
-      for (const double v : q) capped += v >= cap ? v : 0.0;
-      if (!(total - capped > 1e-14 * sum)) return false;
-      factor = (sum - capped) / (total - capped);
+    if (std::abs(total - sum) <= enough) return true;
+    const double capped = ordered_sum<double>(q.size(), [&](std::size_t k) { return q[k] >= cap ? q[k] : 0.0; });
+    const double free = total - capped;
+    if (free > enough && sum > capped) {  // cells between keep their proportions, cells at the cap stay
+      const double factor = (sum - capped) / free;
+      for (double& v : q) v = v >= cap ? v : std::min(v * factor, cap);
+    } else if (total > sum) {
+      for (double& v : q) v *= sum / total;
+    } else {  // all that is loaded has yielded: the nearest empty cells take the rest
+      std::vector<std::size_t> empty;
+      for (std::size_t k = 0; k < q.size(); ++k) {
+        if (q[k] <= 0 && std::isfinite(order[k])) empty.push_back(k);
+      }
+      std::stable_sort(empty.begin(), empty.end(), [&](std::size_t i, std::size_t j) { return order[i] < order[j]; });
+      double missing = sum - total;
+      for (const std::size_t k : empty) {
+        if (missing <= 0) break;
+        q[k] = std::min(0.5 * cap, missing);
+        missing -= q[k];
+      }
+      if (empty.empty()) return false;
     }
-    for (double& v : q) v = std::min(v * factor, cap);
-    if (!std::isfinite(cap)) return true;
+    if (!std::isfinite(cap) && total > 0) return true;
   }
-  return true;
+  return std::abs(ordered_sum<double>(q.size(), [&](std::size_t k) { return q[k]; }) - sum) <= 1e-10 * sum;
 }
 
 void solve_level(const LevelProblem& problem, LevelState& state, const Progress& progress) {
@@ -213,9 +226,8 @@ void solve_level(const LevelProblem& problem, LevelState& state, const Progress&
   state.approach = problem.approach.value_or(0.0);
   double best = infinity;
   int since_best = 0;
-  if (keeps_sum && !rescale(q, *problem.sum, problem.cap)) {
-    solve_level_steadily(problem, state, progress);
-    return;
+  if (keeps_sum && !rescale(q, *problem.sum, problem.cap, problem.gap)) {
+    return;  // more load than the hardness allows on these cells
   }
   for (int step = 0; step < kMostSteps; ++step) {
     progress.check();
@@ -269,9 +281,13 @@ void solve_level(const LevelProblem& problem, LevelState& state, const Progress&
     for (std::size_t k = 0; k < n; ++k) {
       if (corrector.mask[k] != 0.0F) q[k] = std::clamp(q[k] + static_cast<double>(corrector.d[k]), 0.0, problem.cap);
     }
-    if (keeps_sum && !rescale(q, *problem.sum, problem.cap)) break;
+    if (keeps_sum && !rescale(q, *problem.sum, problem.cap, g)) return;
   }
-  solve_level_steadily(problem, state, progress);
+  if (keeps_sum) {
+    solve_level_by_approach(problem, state, progress);
+  } else {
+    solve_level_steadily(problem, state, progress);
+  }
 }
 
 }  // namespace runband::halfspace

@@ -53,13 +53,18 @@ struct LevelState {
   bool converged = false;
 };
 
-/// Multiplies q so that it sums to `sum` with no cell above the cap; cells at the cap stay there while the others rise.
-/// False if that cannot be reached by the loaded cells.
-bool rescale(std::vector<double>& q, double sum, double cap);
+/// Brings q to the given sum with no cell above the cap: cells between keep their proportions, cells at the cap stay
+/// there; where that is not enough, empty cells are filled, smallest `order` first. False if all cells at the cap do
+/// not reach the sum.
+bool rescale(std::vector<double>& q, double sum, double cap, const std::vector<double>& order);
 
 void solve_level(const LevelProblem& problem, LevelState& state, const Progress& progress);
 
-/// Slower, steadier: conjugate gradients of Polonsky & Keer. Used where the active sets do not settle.
+/// Fallback for a given load, needed where nearly every cell has yielded and the few others do not settle the approach:
+/// the approach is searched, each try a solve for given approach.
+void solve_level_by_approach(const LevelProblem& problem, LevelState& state, const Progress& progress);
+
+/// Fallback for a given approach: slower, with a proof of convergence.
 void solve_level_steadily(const LevelProblem& problem, LevelState& state, const Progress& progress);
 
 }  // namespace runband::halfspace
