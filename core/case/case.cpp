@@ -14,7 +14,6 @@ namespace runband {
 
 namespace {
 
-constexpr double kMilli = 1e-3;
 const std::vector<std::string> kSections = {"title",    "track", "wheelset", "wheel",    "rail",
                                             "state",    "load",  "material", "friction", "patch",
                                             "creepage", "bench", "analyses", "plate"};

@@ -102,7 +102,8 @@ TEST(WheelMesh, VolumeObeysPappus) {
     if (v.x() != 0.0 || v.z() >= 0.0) break;
     section.emplace_back(v.y(), -v.z());
   }
-  const auto rings = static_cast<double>(mesh.vertices.size() / section.size());
+  const std::size_t whole_rings = mesh.vertices.size() / section.size();
+  const auto rings = static_cast<double>(whole_rings);
   double moment = 0.0;
   for (std::size_t i = 0; i < section.size(); ++i) {
     const Vec2 a = section[i], b = section[(i + 1) % section.size()];
@@ -232,7 +233,7 @@ TEST(Mesh, TooManyTrianglesNameAChordErrorThatFits) {
       refusal([] { wheel_mesh(coned_wheel(), 460.0, {.chord_error_mm = 1e-4, .max_triangles = 50000}); });
   EXPECT_EQ(error.code(), ErrorCode::out_of_range);
   EXPECT_NE(error.message().find("the limit is 5e+04"), std::string::npos) << error.message();
-  const std::string cure = error.cure();
+  const std::string& cure = error.cure();
   const std::string lead = "a chord_error_mm of ";
   ASSERT_EQ(cure.rfind(lead, 0), 0U) << cure;
   const double fitting = std::stod(cure.substr(lead.size()));
