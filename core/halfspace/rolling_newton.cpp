@@ -8,6 +8,7 @@ namespace {
 
 constexpr double kSaturated = 1.0 - 1e-12;  // |p| at least this part of g may slip
 constexpr int kMaxKrylov = 40;
+constexpr double kOuterCost = 2.0;  // of a double convolution in float ones
 
 /// Classifies the cells and fills the rows of one step; returns the number of cells whose state changed.
 std::size_t linearise(const RollingLevel& level, const std::vector<double>& p, const std::vector<double>& slip,
@@ -79,6 +80,40 @@ void slip_of(const RollingLevel& level, const std::vector<double>& p, PairScratc
   }
 }
 
+namespace {
+
+/// The same in single precision: good to a few 1e-6 of the largest slip.
+void rough_slip_of(const RollingLevel& level, const std::vector<double>& p, RollingScratch& scratch,
+                   std::vector<double>& slip) {
+  scratch.step.resize(p.size());
+  for (std::size_t i = 0; i < p.size(); ++i) scratch.step[i] = static_cast<float>(p[i]);
+  level.op->apply(scratch.step.data(), scratch.step.data(), scratch.fast);
+  slip.resize(p.size());
+  for (std::size_t i = 0; i < p.size(); ++i) {
+    slip[i] =
+        level.in[i / 2] != 0 ? static_cast<double>(scratch.step[i]) + level.rigid[i] + level.edge[i] * p[i] : 0.0;
+  }
+}
+
+// Above this residual single precision is good enough to evaluate one.
+constexpr double kRough = 5e-5;
+
+/// Slip and residual of p, in double precision where the residual asks for it. Adds its cost to `convolutions`.
+double evaluate(const RollingLevel& level, const std::vector<double>& p, double last, RollingScratch& scratch,
+                std::vector<double>& slip, double& convolutions) {
+  if (last > 20 * kRough) {
+    rough_slip_of(level, p, scratch, slip);
+    convolutions += 1;
+    const double err = friction_residual(level, p, slip);
+    if (err > kRough) return err;
+  }
+  slip_of(level, p, scratch.fine, slip);
+  convolutions += kOuterCost;
+  return friction_residual(level, p, slip);
+}
+
+}  // namespace
+
 double friction_residual(const RollingLevel& level, const std::vector<double>& p, const std::vector<double>& slip) {
   const double inverse_d = 1.0 / level.op->own_xx();
   double off = 0, all = 0;
@@ -101,8 +136,6 @@ NewtonResult solve_newton(const RollingLevel& level, const NewtonOptions& option
                           RollingScratch& scratch, std::vector<double>& p, std::vector<double>& slip) {
   const std::size_t n = level.cells();
   const double d = level.op->own_xx();
-  // A double convolution costs about two float ones.
-  constexpr double kOuterCost = 2.0;
   const double inner_cost = 1.0 + level.op->circulant_cost();
 
   LinearSystem system;
@@ -116,9 +149,7 @@ NewtonResult solve_newton(const RollingLevel& level, const NewtonOptions& option
   std::vector<double> best_p = p;
 
   NewtonResult result;
-  slip_of(level, p, scratch.fine, slip);
-  result.convolutions += kOuterCost;
-  double err = friction_residual(level, p, slip), last = err, best = err;
+  double err = evaluate(level, p, 1.0, scratch, slip, result.convolutions), last = err, best = err;
   double sigma = 0;
   int stalled = 0;
   const auto in_contact = static_cast<double>(std::count(level.in.begin(), level.in.end(), 1));
@@ -133,11 +164,9 @@ NewtonResult solve_newton(const RollingLevel& level, const NewtonOptions& option
         solve_fgmres(system, scratch.rhs, tolerance, kMaxKrylov, scratch.krylov, scratch.fast, scratch.step);
     result.convolutions += krylov.iterations * inner_cost;
     update(level, state, scratch.step, p);
-    slip_of(level, p, scratch.fine, slip);
-    result.convolutions += kOuterCost;
     ++result.steps;
     last = err;
-    err = friction_residual(level, p, slip);
+    err = evaluate(level, p, last, scratch, slip, result.convolutions);
     if (err < best) {
       best = err;
       stalled = 0;
