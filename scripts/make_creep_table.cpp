@@ -17,16 +17,17 @@ int main() {
   const auto node = [](int i, int n) { return std::cos(std::numbers::pi * (i + 0.5) / n); };
   for (int i = 0; i < kR; ++i) {
     for (int j = 0; j < kN; ++j) {
-      const CreepCoefficients c = compute_creep_coefficients(std::exp(node(i, kR) * kCreepTableLogRatio),
-                                                             0.25 * (1 + node(j, kN)), kDegree);
+      const CreepCoefficients c =
+          compute_creep_coefficients(std::exp(node(i, kR) * kCreepTableLogRatio), 0.25 * (1 + node(j, kN)), kDegree);
       value[i * kN + j] = {std::log(c.c11), std::log(c.c22), std::log(c.c23), std::log(c.c33)};
     }
   }
   std::FILE* f = std::fopen("core/halfspace/creep_coefficients_table.cpp", "w");
   if (f == nullptr) return 3;
-  std::fprintf(f, "// Written by scripts/make_creep_table.sh; do not edit.\n// clang-format off\n"
-                  "#include \"core/halfspace/creep_coefficients_table.h\"\n\nnamespace runband::halfspace {\n\n"
-                  "const double kCreepTable[4][kCreepTableRatios][kCreepTableNus] = {\n");
+  std::fprintf(f,
+               "// Written by scripts/make_creep_table.sh; do not edit.\n// clang-format off\n"
+               "#include \"core/halfspace/creep_coefficients_table.h\"\n\nnamespace runband::halfspace {\n\n"
+               "const double kCreepTable[4][kCreepTableRatios][kCreepTableNus] = {\n");
   for (int k = 0; k < 4; ++k) {
     std::fprintf(f, "  {\n");
     for (int p = 0; p < kR; ++p) {
@@ -50,8 +51,10 @@ int main() {
 
   f = std::fopen("data/tables/creep_coefficients.csv", "w");
   if (f == nullptr) return 3;
-  std::fprintf(f, "# Linear creep coefficients of the ellipse (Kalker), computed by scripts/make_creep_table.sh: Galin's "
-                  "theorem, harmonics to degree %d.\na_over_b,poisson_ratio,c11,c22,c23,c33\n", kDegree);
+  std::fprintf(f,
+               "# Linear creep coefficients of the ellipse (Kalker), computed by scripts/make_creep_table.sh: Galin's "
+               "theorem, harmonics to degree %d.\na_over_b,poisson_ratio,c11,c22,c23,c33\n",
+               kDegree);
   for (const double nu : {0.0, 0.1, 0.2, 0.25, 0.28, 0.3, 0.4, 0.5}) {
     for (int i = 1; i <= 19; ++i) {
       const double r = i <= 10 ? i / 10.0 : 10.0 / (20 - i);

@@ -30,7 +30,8 @@ CreepCoefficients creep_coefficients(double a_over_b, double poisson_ratio) {
   }
   const double position = std::log(a_over_b) / kCreepTableLogRatio;
   if (std::abs(position) > 1) {
-    if (a_over_b <= kMostElongated && a_over_b >= 1 / kMostElongated) return compute_creep_coefficients(a_over_b, poisson_ratio);
+    if (a_over_b <= kMostElongated && a_over_b >= 1 / kMostElongated)
+      return compute_creep_coefficients(a_over_b, poisson_ratio);
     // Powers of the leading asymptotes; the logarithms in them hardly move here.
     CreepCoefficients c = compute_creep_coefficients(a_over_b > 1 ? kMostElongated : 1 / kMostElongated, poisson_ratio);
     if (a_over_b > 1) {

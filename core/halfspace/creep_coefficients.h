@@ -9,8 +9,8 @@ struct CreepCoefficients {
   double c11 = 0, c22 = 0, c23 = 0, c33 = 0;
 };
 
-/// Interpolated from a table over a/b 0.05..20, in half a microsecond; computed (about 10 ms) from there to 1/200 and 200;
-/// beyond, scaled by the powers of a/b of the known asymptotes.
+/// Interpolated from a table over a/b 0.05..20, in half a microsecond; computed (about 10 ms) from there to 1/200 and
+/// 200; beyond, scaled by the powers of a/b of the known asymptotes.
 ///
 /// @param a_over_b       > 0, finite.
 /// @param poisson_ratio  0..0.5, of the pair.
@@ -21,9 +21,9 @@ CreepCoefficients creep_coefficients(double a_over_b, double poisson_ratio);
 
 /// The same computed from the equations, in about ten milliseconds: what the table is made of.
 ///
-/// Galin's theorem: a traction f_n / sqrt(1 - x^2/a^2 - s^2/b^2), f_n a hemispherical harmonic of degree n, displaces the
-/// ellipse by harmonics of the same degree. Without slip u = (integral of w along x) + k(s); k, a series of Legendre
-/// polynomials, makes the singular part f vanish along the leading edge (least squares).
+/// Galin's theorem: a traction f_n / sqrt(1 - x^2/a^2 - s^2/b^2), f_n a hemispherical harmonic of degree n, displaces
+/// the ellipse by harmonics of the same degree. Without slip u = (integral of w along x) + k(s); k, a series of
+/// Legendre polynomials, makes the singular part f vanish along the leading edge (least squares).
 /// @param degree  Highest degree of the harmonics, 8..128.
 /// @accuracy 1e-4 relative at degree 48 for a/b 0.1..10.
 /// @throws InputError (out_of_range).

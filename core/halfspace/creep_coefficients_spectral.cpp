@@ -1,14 +1,14 @@
 // The linear creep coefficients from first principles.
 //
-// On the ellipse, with (X, S) = (x/a, s/b) = rho (cos theta, sin theta), write the traction as f / sqrt(1 - rho^2) and f as a
-// sum of hemispherical harmonics f_n. The displacement is a back-projection of Radon transforms: the two bodies' symbol
-// is 2 (I - nu e e^T) / (G |k|), e = k/|k|, and the Radon transform of f_n / sqrt(1 - rho^2) across direction d is
-// pi P_n(sigma) f_n(d), f_n(d) its value on the rim. So
+// On the ellipse, with (X, S) = (x/a, s/b) = rho (cos theta, sin theta), write the traction as f / sqrt(1 - rho^2) and
+// f as a sum of hemispherical harmonics f_n. The displacement is a back-projection of Radon transforms: the two bodies'
+// symbol is 2 (I - nu e e^T) / (G |k|), e = k/|k|, and the Radon transform of f_n / sqrt(1 - rho^2) across direction d
+// is pi P_n(sigma) f_n(d), f_n(d) its value on the rim. So
 //   u(X) = (1/G) int_0^pi W(psi) sum_n f_n(psi) P_n(X . d_psi) dpsi,   W = L (I - nu e e^T),
 //   L = (cos^2 psi / a^2 + sin^2 psi / b^2)^(-1/2),   e = L (cos psi / a, sin psi / b),
-// which is block diagonal in n. Source of the theorem: L. A. Galin, Contact Problems in the Theory of Elasticity (1953).
+// which is block diagonal in n. Source of the theorem: L. A. Galin, Contact Problems in the Theory of Elasticity
+// (1953).
 #include <Eigen/Dense>
-
 #include <cmath>
 #include <complex>
 #include <numbers>
@@ -38,7 +38,8 @@ struct Weights {
     const int points = 4 * harmonics + 64 + static_cast<int>(24 * sharpness);  // trapezoidal rule: exponential
     for (int q = 0; q < points; ++q) {
       const double psi = kPi * q / points, c = std::cos(psi), s = std::sin(psi);
-      const double l = 1.0 / std::sqrt(c * c / (a * a) + s * s / (b * b)), ex = l * c / a, es = l * s / b, w = l * kPi / points;
+      const double l = 1.0 / std::sqrt(c * c / (a * a) + s * s / (b * b)), ex = l * c / a, es = l * s / b,
+                   w = l * kPi / points;
       const std::complex<double> turn(std::cos(2 * psi), std::sin(2 * psi));
       std::complex<double> wave(1, 0);
       for (std::size_t k = 0; k < n; k += 2) {
@@ -50,7 +51,9 @@ struct Weights {
     }
   }
   static double cosine(const std::vector<double>& v, int k) { return v[static_cast<std::size_t>(std::abs(k))]; }
-  static double sine(const std::vector<double>& v, int k) { return (k < 0 ? -1.0 : 1.0) * v[static_cast<std::size_t>(std::abs(k))]; }
+  static double sine(const std::vector<double>& v, int k) {
+    return (k < 0 ? -1.0 : 1.0) * v[static_cast<std::size_t>(std::abs(k))];
+  }
 };
 
 /// One parity of the problem at one degree: unknowns are the rim's cosines of the even component, then the sines of the
@@ -116,7 +119,8 @@ class NoSlip {
   NoSlip(double a, double b, double nu, int degree, Even even) : a_(a), b_(b), even_(even) {
     const Weights weights(a, b, nu, 2 * degree + 2);
     for (int n = 0; n <= degree; ++n) blocks_.emplace_back(n, weights, even);
-    for (int q = 0; q < 4 * degree; ++q) psi_.push_back(kPi * ((q + 0.5) / (8.0 * degree)));  // half the leading edge: parity
+    for (int q = 0; q < 4 * degree; ++q)
+      psi_.push_back(kPi * ((q + 0.5) / (8.0 * degree)));  // half the leading edge: parity
     // One column for each Legendre polynomial of k: even degrees in the even component, odd degrees in the odd one.
     Eigen::MatrixXd rim = Eigen::MatrixXd::Zero(2 * static_cast<Eigen::Index>(psi_.size()), degree + 1);
     for (int n = 0; n <= degree; ++n) {
@@ -185,7 +189,8 @@ CreepCoefficients compute_creep_coefficients(double a_over_b, double poisson_rat
   u(0) = a;  // u_s = x
   const Forces lateral = across.forces(1, u);
   u = Eigen::VectorXd::Zero(across.block(2).size());
-  // Spin: u_x = -x s = -a b XS, u_s = x^2 / 2 = a^2 (2 P_2(X) + 1) / 6; the constant joins k. Block 2: cos 2, cos 0, sin 2.
+  // Spin: u_x = -x s = -a b XS, u_s = x^2 / 2 = a^2 (2 P_2(X) + 1) / 6; the constant joins k. Block 2: cos 2, cos 0,
+  // sin 2.
   u(0) = u(1) = a * a / 3;
   u(2) = -2.0 / 3.0 * a * b;
   const Forces spin = across.forces(2, u);

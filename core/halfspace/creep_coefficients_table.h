@@ -1,4 +1,5 @@
-// The compiled-in table of linear creep coefficients: Chebyshev coefficients of log C11, C22, C23, C33 over log(a/b) and nu.
+// The compiled-in table of linear creep coefficients: Chebyshev coefficients of log C11, C22, C23, C33 over log(a/b)
+// and nu.
 #pragma once
 
 namespace runband::halfspace {

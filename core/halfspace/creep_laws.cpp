@@ -64,7 +64,8 @@ double cubic_saturation(double tau) {
 CreepForces linear_creep_forces(const CreepContact& c, const CreepCoefficients& k) {
   check(c);
   const double a = c.semi_axis_rolling_mm, b = c.semi_axis_across_mm, stiffness = c.shear_modulus_MPa * a * b;
-  return {-stiffness * k.c11 * c.longitudinal, -stiffness * (k.c22 * c.lateral + std::sqrt(a * b) * k.c23 * c.spin_per_mm)};
+  return {-stiffness * k.c11 * c.longitudinal,
+          -stiffness * (k.c22 * c.lateral + std::sqrt(a * b) * k.c23 * c.spin_per_mm)};
 }
 
 CreepForces vermeulen_johnson(const CreepContact& c) {
@@ -101,7 +102,8 @@ CreepForces polach(const CreepContact& c, const CreepCoefficients& k, const Pola
   const double s = std::hypot(sx, sy), s_c = std::hypot(sx, sy_c);
   if (s_c == 0) return {};
   const double slip_speed = s * p.speed_m_s;
-  const double mu = c.friction * ((1 - p.friction_ratio) * std::exp(-p.friction_decay_s_per_m * slip_speed) + p.friction_ratio);
+  const double mu =
+      c.friction * ((1 - p.friction_ratio) * std::exp(-p.friction_decay_s_per_m * slip_speed) + p.friction_ratio);
   const double limit = mu * c.normal_force_N;
   if (limit == 0) return {};
   const double c_jj = s > 0 ? std::hypot(k.c11 * sx, k.c22 * sy) / s : k.c22;

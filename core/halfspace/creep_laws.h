@@ -38,11 +38,11 @@ CreepForces shen_hedrick_elkins(const CreepContact& contact, const CreepCoeffici
 
 /// Parameters of Polach's law. Defaults: the 1999 form, dry and constant friction.
 struct PolachParameters {
-  double adhesion_reduction = 1;   ///< kA, 0 < kS <= kA <= 1
-  double slip_reduction = 1;       ///< kS
-  double friction_ratio = 1;       ///< A = mu(infinite slip) / mu(0)
+  double adhesion_reduction = 1;      ///< kA, 0 < kS <= kA <= 1
+  double slip_reduction = 1;          ///< kS
+  double friction_ratio = 1;          ///< A = mu(infinite slip) / mu(0)
   double friction_decay_s_per_m = 0;  ///< B
-  double speed_m_s = 0;            ///< V; only for the falling friction
+  double speed_m_s = 0;               ///< V; only for the falling friction
 };
 
 /// F / (N mu) = (2/pi) (kA eps / (1 + (kA eps)^2) + atan(kS eps)). Source: O. Polach, Wear 258 (2005) 992.
@@ -52,6 +52,7 @@ double polach_saturation(double epsilon, double adhesion_reduction, double slip_
 double polach_spin_factor(double epsilon_m);
 
 /// Polach's law with his treatment of spin (the constants of the spin term are remembered, not read: memory).
-CreepForces polach(const CreepContact& contact, const CreepCoefficients& coefficients, const PolachParameters& parameters = {});
+CreepForces polach(const CreepContact& contact, const CreepCoefficients& coefficients,
+                   const PolachParameters& parameters = {});
 
 }  // namespace runband::halfspace

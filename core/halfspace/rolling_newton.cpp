@@ -90,8 +90,7 @@ void rough_slip_of(const RollingLevel& level, const std::vector<double>& p, Roll
   level.op->apply(scratch.step.data(), scratch.step.data(), scratch.fast);
   slip.resize(p.size());
   for (std::size_t i = 0; i < p.size(); ++i) {
-    slip[i] =
-        level.in[i / 2] != 0 ? static_cast<double>(scratch.step[i]) + level.rigid[i] + level.edge[i] * p[i] : 0.0;
+    slip[i] = level.in[i / 2] != 0 ? static_cast<double>(scratch.step[i]) + level.rigid[i] + level.edge[i] * p[i] : 0.0;
   }
 }
 

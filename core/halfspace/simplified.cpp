@@ -1,7 +1,6 @@
 #include "core/halfspace/simplified.h"
 
 #include <Eigen/Core>
-
 #include <algorithm>
 #include <cmath>
 #include <numbers>
@@ -69,10 +68,12 @@ SimplifiedForces simplified_forces(const SimplifiedEllipse& e) {
     // Square of the bound is shape * (1 - zeta^2) for Hertz's, shape * (1 - zeta^2)^2 for the parabola.
     const Lanes shape = peak * peak * (elliptic ? chord : chord.square());
     const Lanes rate_x = (wx - spin * s) * half, rate_0 = ws * half, rate_1 = spin * half.square();
-    Lanes px = Lanes::Zero(), ps = Lanes::Zero(), fx = Lanes::Zero(), fs = Lanes::Zero(), m = Lanes::Zero(), slip = Lanes::Zero();
+    Lanes px = Lanes::Zero(), ps = Lanes::Zero(), fx = Lanes::Zero(), fs = Lanes::Zero(), m = Lanes::Zero(),
+          slip = Lanes::Zero();
     double before = 1;
     for (int k = 0; k < e.elements; ++k) {
-      const double zeta = 1 - (k + 0.5) * step, run = before - zeta, mean = 0.5 * (before + zeta), fall = 1 - zeta * zeta;
+      const double zeta = 1 - (k + 0.5) * step, run = before - zeta, mean = 0.5 * (before + zeta),
+                   fall = 1 - zeta * zeta;
       before = zeta;
       const Lanes tx = px - run * rate_x, ts = ps - run * (rate_0 + mean * rate_1);
       const Lanes ratio = (elliptic ? fall : fall * fall) * shape / (tx.square() + ts.square() + kTiny);

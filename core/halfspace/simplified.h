@@ -19,8 +19,8 @@ struct Flexibility {
 Flexibility flexibility(double semi_axis_rolling_mm, double semi_axis_across_mm, double shear_modulus_MPa,
                         const CreepCoefficients& coefficients);
 
-/// Shape of the traction bound over the ellipse: Hertz's, or the parabola that belongs to a bed of springs. The parabola
-/// gives the better stick area.
+/// Shape of the traction bound over the ellipse: Hertz's, or the parabola that belongs to a bed of springs. The
+/// parabola gives the better stick area.
 enum class TractionBound { elliptic, parabolic };
 
 struct SimplifiedEllipse {
@@ -41,14 +41,14 @@ struct SimplifiedForces {
   double slip_area_fraction = 0;
 };
 
-/// Creep forces of an ellipse: strips along the rolling direction, each integrated from its leading edge; several strips
-/// side by side in vector registers.
+/// Creep forces of an ellipse: strips along the rolling direction, each integrated from its leading edge; several
+/// strips side by side in vector registers.
 /// @throws InputError (out_of_range) unless axes, force and flexibilities are > 0, friction >= 0, 1 <= strips, elements
 /// <= 4096, and creepages are finite.
 SimplifiedForces simplified_forces(const SimplifiedEllipse& ellipse);
 
-/// The same rule on any patch, bound mu p_n, any field of rigid slip: its mean over the patch acts on L1 and L2, the rest
-/// on L3. `residual`, `convolutions` and `iterations` of the result are zero.
+/// The same rule on any patch, bound mu p_n, any field of rigid slip: its mean over the patch acts on L1 and L2, the
+/// rest on L3. `residual`, `convolutions` and `iterations` of the result are zero.
 RollingResult simplified_rolling(const RollingProblem& problem, const Flexibility& flexibility);
 
 }  // namespace runband::halfspace
