@@ -3,6 +3,7 @@
 
 #include <optional>
 #include <string>
+#include <vector>
 
 #include "core/base/material.h"
 #include "core/base/progress.h"
@@ -29,6 +30,7 @@ struct Patch {
   int iterations = 0;  ///< 0 for the closed form
   int convolutions = 0;
   double solve_ms = 0;
+  std::vector<Caution> cautions;
 };
 
 /// The ellipse's pressure on a grid with one empty cell around it.

@@ -1,8 +1,8 @@
 // How fast the normal problem's error falls with the cell size: the measured order, against Hertz.
 #include <gtest/gtest.h>
 
-#include <array>
 #include <cmath>
+#include <string>
 #include <vector>
 
 #include "core/halfspace/normal.h"
@@ -55,6 +55,8 @@ class NormalOrder : public testing::TestWithParam<double> {};
 
 TEST_P(NormalOrder, OfApproachFieldPeakAndArea) {
   const Errors coarse = errors(GetParam(), 24), fine = errors(GetParam(), 192);
+  // Measured at 192 cells: approach 5e-6 to 1.4e-5 (order 1.9 to 2.1), peak 5e-6 to 2e-5 (2.0 to 2.1), field 1e-3 to
+  // 2e-3 (1.0), area 2.5e-4 (1.1 to 2.0).
   const auto record = [&](const char* name, double value) { RecordProperty(name, std::to_string(value)); };
   const double approach = order(coarse.approach, fine.approach, 8), field = order(coarse.field, fine.field, 8);
   const double peak = order(coarse.peak, fine.peak, 8), area = order(coarse.area, fine.area, 8);
@@ -62,12 +64,10 @@ TEST_P(NormalOrder, OfApproachFieldPeakAndArea) {
   record("order_field", field);
   record("order_peak", peak);
   record("order_area", area);
-  printf("ratio %g: approach %.1e order %.2f, field %.1e order %.2f, peak %.1e order %.2f, area %.1e order %.2f\n",
-         GetParam(), fine.approach, approach, fine.field, field, fine.peak, peak, fine.area, area);
-  // The square-root edge of the pressure limits every order: 3/2 for integral quantities, 1 for the field's rms.
-  EXPECT_GT(approach, 1.3);
-  EXPECT_GT(peak, 1.3);
-  EXPECT_GT(field, 0.8);
+  // The square-root edge of the pressure holds the field's rms and the area to first order.
+  EXPECT_GT(approach, 1.7);
+  EXPECT_GT(peak, 1.7);
+  EXPECT_GT(field, 0.9);
   EXPECT_GT(area, 0.8);
   EXPECT_LT(fine.approach, 5e-5);
 }
