@@ -86,26 +86,6 @@ Patch solve_patch(halfspace::NormalProblem problem, double normal_force_N, const
   return patch;
 }
 
-// The half-space holds while the patch is small against the radii; a half-width above a
-// quarter of the smallest radius is where this is doubted (common practice, no source).
-void doubt_half_space(Patch& patch, const FittedCurvature& curvature) {
-  constexpr double kSmall = 0.25;
-  const double largest = std::max({std::abs(curvature.wheel_across_per_mm), std::abs(curvature.rail_across_per_mm)});
-  int first = patch.grid.ns, last = -1;
-  for (int j = 0; j < patch.grid.ns; ++j) {
-    for (int i = 0; i < patch.grid.nx; ++i) {
-      if (!(patch.pressure.values[static_cast<std::size_t>(j * patch.grid.nx + i)] > 0)) continue;
-      first = std::min(first, j), last = std::max(last, j);
-    }
-  }
-  const double half_width = 0.5 * (last - first + 1) * patch.grid.ds_mm;
-  if (half_width * largest <= kSmall) return;
-  patch.cautions.push_back({"half_space_questionable", Severity::caution,
-                            "The patch is " + number_text(2.0 * half_width, 3) +
-                                " mm wide where the smallest radius is " + number_text(1.0 / largest, 3) +
-                                " mm: too wide to count as a half-space, pressures are uncertain."});
-}
-
 }  // namespace
 
 Patch half_space_patch(const Locator& locator, const ContactZone& zone, const WheelsetPose& pose, double normal_force_N,
@@ -123,9 +103,7 @@ Patch half_space_patch(const Locator& locator, const ContactZone& zone, const Wh
     half_s = std::clamp(kMargin * zone.ellipse->semi_axis_across_mm, kLeast, kMost);
   }
   problem.start = {-half_x, half_x, -half_s, half_s};
-  Patch patch = solve_patch(std::move(problem), normal_force_N, material, options, progress);
-  doubt_half_space(patch, zone.curvature);
-  return patch;
+  return solve_patch(std::move(problem), normal_force_N, material, options, progress);
 }
 
 Patch half_space_patch(double curvature_rolling_per_mm, double curvature_across_per_mm, double normal_force_N,

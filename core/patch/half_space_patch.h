@@ -10,6 +10,7 @@ namespace runband {
 
 /// Patch of one zone of a located wheelset: the gap along the zone's normal between wheel of revolution and rail, as
 /// fitted, pressed together by the zone's force. Nothing is assumed of its shape, and it may fall into several spots.
+/// Whether the patch is small enough against the radii is said in the zone's cautions (half_space_doubtful).
 ///
 /// @param normal_force_N  > 0.
 /// @param material        with hardness_MPa the pressure is capped (elastic-perfectly plastic).
