@@ -88,22 +88,68 @@ Patch solve_patch(halfspace::NormalProblem problem, double normal_force_N, const
 
 }  // namespace
 
-Patch half_space_patch(const Locator& locator, const ContactZone& zone, const WheelsetPose& pose, double normal_force_N,
-                       const MaterialPair& material, const PatchOptions& options, const Progress& progress) {
+std::vector<std::vector<std::size_t>> zones_solved_together(const std::vector<ContactZone>& zones) {
+  const auto overlaps = [](const ContactZone& zone) {
+    return std::any_of(zone.cautions.begin(), zone.cautions.end(),
+                       [](const Caution& c) { return c.code == "patches_overlap"; });
+  };
+  std::vector<std::vector<std::size_t>> groups;
+  for (std::size_t k = 0; k < zones.size(); ++k) {
+    if (!zones[k].carries_load) continue;
+    // Zones come in order across a side, so what overlaps is neighbours.
+    const bool joins = !groups.empty() && overlaps(zones[k]) && overlaps(zones[groups.back().back()]) &&
+                       zones[groups.back().back()].side == zones[k].side;
+    if (joins) {
+      groups.back().push_back(k);
+    } else {
+      groups.push_back({k});
+    }
+  }
+  for (auto& group : groups) {
+    std::stable_sort(group.begin(), group.end(),
+                     [&](std::size_t a, std::size_t b) { return zones[a].normal_force_N > zones[b].normal_force_N; });
+  }
+  return groups;
+}
+
+Patch half_space_patch(const Locator& locator, const std::vector<ContactZone>& zones,
+                       const std::vector<std::size_t>& group, const WheelsetPose& pose, const MaterialPair& material,
+                       const PatchOptions& options, const Progress& progress) {
+  if (group.empty()) {
+    throw InputError(ErrorCode::no_contact, "half-space patch: the group of zones is empty.",
+                     "name the zones that carry load.");
+  }
+  const ContactZone& zone = zones.at(group.front());
   halfspace::NormalProblem problem;
   problem.gap = [&](const Grid& grid, double* gap) {
     const std::vector<double> field = locator.gap_field_mm(zone, pose, grid);
     std::copy(field.begin(), field.end(), gap);
   };
-  // Somewhat more than the ellipse; where there is none, a box of the usual size (it grows and shrinks by itself).
+  // Somewhat more than the ellipses; where there is none, a box of the usual size (it grows and shrinks by itself).
   constexpr double kMargin = 1.4, kUsual = 8.0, kLeast = 0.2, kMost = 40.0;
-  double half_x = kUsual, half_s = kUsual;
-  if (zone.ellipse) {
-    half_x = std::clamp(kMargin * zone.ellipse->semi_axis_rolling_mm, kLeast, kMost);
-    half_s = std::clamp(kMargin * zone.ellipse->semi_axis_across_mm, kLeast, kMost);
+  double force_N = 0;
+  halfspace::Box& box = problem.start;
+  for (const std::size_t k : group) {
+    const ContactZone& part = zones.at(k);
+    force_N += part.normal_force_N * zone.frame.col(2).dot(part.frame.col(2));
+    double half_x = kUsual, half_s = kUsual;
+    if (part.ellipse) {
+      half_x = std::clamp(kMargin * part.ellipse->semi_axis_rolling_mm, kLeast, kMost);
+      half_s = std::clamp(kMargin * part.ellipse->semi_axis_across_mm, kLeast, kMost);
+    }
+    const Vec3 away = part.track_mm - zone.track_mm;
+    const double x = away.dot(zone.frame.col(0)), s = away.dot(zone.frame.col(1));
+    box = {std::min(box.x_min_mm, x - half_x), std::max(box.x_max_mm, x + half_x), std::min(box.s_min_mm, s - half_s),
+           std::max(box.s_max_mm, s + half_s)};
   }
-  problem.start = {-half_x, half_x, -half_s, half_s};
-  return solve_patch(std::move(problem), normal_force_N, material, options, progress);
+  return solve_patch(std::move(problem), force_N, material, options, progress);
+}
+
+Patch half_space_patch(const Locator& locator, const ContactZone& zone, const WheelsetPose& pose, double normal_force_N,
+                       const MaterialPair& material, const PatchOptions& options, const Progress& progress) {
+  ContactZone alone = zone;
+  alone.normal_force_N = normal_force_N;
+  return half_space_patch(locator, {alone}, {0}, pose, material, options, progress);
 }
 
 Patch half_space_patch(double curvature_rolling_per_mm, double curvature_across_per_mm, double normal_force_N,

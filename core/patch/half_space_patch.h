@@ -1,6 +1,9 @@
 // The patch of the actual surfaces: pressure of two elastic half-spaces, whatever its shape.
 #pragma once
 
+#include <cstddef>
+#include <vector>
+
 #include "core/base/progress.h"
 #include "core/locate/locate.h"
 #include "core/patch/gap_grid.h"
@@ -18,6 +21,16 @@ namespace runband {
 /// @throws InputError (out_of_range, no_contact), NotConverged, Cancelled.
 Patch half_space_patch(const Locator& locator, const ContactZone& zone, const WheelsetPose& pose, double normal_force_N,
                        const MaterialPair& material, const PatchOptions& options, const Progress& progress = {});
+
+/// Zones that press on each other (cautions patches_overlap) share one patch: indices into `zones`, each load-carrying
+/// zone in exactly one group, the one with the largest force first; groups in the order of their first zones.
+std::vector<std::vector<std::size_t>> zones_solved_together(const std::vector<ContactZone>& zones);
+
+/// One patch for such a group: in the contact frame of zones[group.front()], under the sum of the forces of all of its
+/// zones along that zone's normal. The directions of their normals differ by a few degrees at most.
+Patch half_space_patch(const Locator& locator, const std::vector<ContactZone>& zones,
+                       const std::vector<std::size_t>& group, const WheelsetPose& pose, const MaterialPair& material,
+                       const PatchOptions& options, const Progress& progress = {});
 
 /// Patch of two bodies with the given relative curvatures, as hertz_ellipse sees them.
 Patch half_space_patch(double curvature_rolling_per_mm, double curvature_across_per_mm, double normal_force_N,

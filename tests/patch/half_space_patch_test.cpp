@@ -9,8 +9,10 @@
 #include <memory>
 #include <sstream>
 #include <string>
+#include <utility>
 
 #include "core/base/error.h"
+#include "core/case/case.h"
 
 namespace runband {
 namespace {
@@ -187,6 +189,46 @@ TEST_P(OnTheTrack, EveryLoadedZoneIsSolved) {
 INSTANTIATE_TEST_SUITE_P(Poses, OnTheTrack,
                          testing::Values(std::array{0.0, 0.0}, std::array{2.0, 0.0}, std::array{4.0, 0.005},
                                          std::array{6.2, 0.0}, std::array{-3.0, -0.003}));
+
+// New profiles at 1:40 in the middle of the track touch along a broad, flat band. Fitted to measured points the band
+// falls apart into two zones that press on each other; together they are nearly the patch of the definitions.
+TEST(ZonesTogether, OverlappingZonesAreOnePatch) {
+  const auto located_on = [](const std::string& name) {
+    const Case c = load_case(std::string(RUNBAND_DATA) + "/demo/" + name);
+    const auto profile = [&](const ProfileRequest& r, ProfileKind kind) {
+      return load_profile(r.profile, kind, r.options, c.folder);
+    };
+    const std::array wheels{profile(c.wheels[0], ProfileKind::wheel), profile(c.wheels[1], ProfileKind::wheel)};
+    const std::array rails{profile(c.rails[0], ProfileKind::rail), profile(c.rails[1], ProfileKind::rail)};
+    Locator locator(std::make_shared<Pairing>(wheels, rails, c.track, c.wheelset));
+    Located located = locator.loaded(0.0, 0.0, LateralReference::axle, {}, c.material);
+    return std::pair{std::move(locator), std::move(located)};
+  };
+  const auto [measured, zones] = located_on("measured_new.toml");
+  const auto groups = zones_solved_together(zones.zones);
+  std::size_t covered = 0;
+  for (const auto& group : groups) {
+    covered += group.size();
+    for (const std::size_t k : group) EXPECT_TRUE(zones.zones[k].carries_load);
+    const Patch together = half_space_patch(measured, zones.zones, group, zones.pose, {}, half_space(64));
+    double force = 0;
+    for (const std::size_t k : group) force += zones.zones[k].normal_force_N;
+    EXPECT_NEAR(total(together) / force, 1, 1e-3);  // the normals differ a little
+    if (group.size() < 2) continue;
+    EXPECT_GE(zones.zones[group[0]].normal_force_N, zones.zones[group[1]].normal_force_N);
+    double apart = 0;  // alone, each zone spreads over the other's ground: the sum counts it twice
+    for (const std::size_t k : group) {
+      const ContactZone& zone = zones.zones[k];
+      apart += half_space_patch(measured, zone, zones.pose, zone.normal_force_N, {}, half_space(64)).area_mm2;
+    }
+    EXPECT_LT(together.area_mm2, 0.9 * apart);
+    EXPECT_NEAR(together.area_mm2 / 190.0, 1, 0.1);  // the definitions give 190 mm2 under the same load
+  }
+  EXPECT_EQ(covered, static_cast<std::size_t>(std::count_if(zones.zones.begin(), zones.zones.end(),
+                                                            [](const ContactZone& z) { return z.carries_load; })));
+  EXPECT_LT(groups.size(), covered) << "the demo should hold an overlap";
+  EXPECT_THROW(half_space_patch(measured, zones.zones, {}, zones.pose, {}, half_space(64)), InputError);
+}
 
 }  // namespace
 }  // namespace runband
