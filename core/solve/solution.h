@@ -43,6 +43,12 @@ struct Solution {
 /// @throws Error of any kind. Never half-made.
 Solution solve(const Case&, const Progress& = {});
 
+/// Profiles, pairing and tables of a case: what stays the same while the wheelset moves. Null for a bench case.
+std::shared_ptr<const Locator> prepare(const Case&);
+/// The same with the tables of an earlier prepare() of a case that differs at most in state, load, material, friction
+/// and patch.
+Solution solve(const Case&, std::shared_ptr<const Locator>, const Progress& = {});
+
 struct SideTraverse {
   std::vector<double> contact_angle_deg, rolling_radius_mm, wheel_y_mm, rail_y_mm;
 };
@@ -56,6 +62,7 @@ struct Traverse {
   std::vector<Caution> cautions;
 };
 Traverse traverse(const Case&, double from_mm, double to_mm, double step_mm, const Progress& = {});
+Traverse traverse(const Case&, const std::vector<double>& positions_mm, const Progress& = {});
 
 /// JSON and CSV as documented in README; writers of the VTK XML files of --out.
 std::string solution_json(const Solution&);

@@ -1,0 +1,123 @@
+// From a case to its solution, one direction: profiles, pairing, zones, patches.
+#include <chrono>
+#include <cmath>
+
+#include "core/base/error.h"
+#include "core/base/text.h"
+#include "core/solve/solution.h"
+
+namespace runband {
+
+namespace {
+
+using Clock = std::chrono::steady_clock;
+
+double since_ms(Clock::time_point start) {
+  return std::chrono::duration<double, std::milli>(Clock::now() - start).count();
+}
+
+bool same(const ProfileRequest& a, const ProfileRequest& b) {
+  return a.profile == b.profile && a.options.noise_mm == b.options.noise_mm && a.options.unit == b.options.unit &&
+         a.options.y_axis == b.options.y_axis && a.options.z_axis == b.options.z_axis;
+}
+
+std::array<std::shared_ptr<const Profile>, 2> load_pair(const ProfileRequest (&requests)[2], ProfileKind kind,
+                                                        const Case& c) {
+  std::array<std::shared_ptr<const Profile>, 2> pair;
+  pair[0] = load_profile(requests[0].profile, kind, requests[0].options, c.folder);
+  pair[1] =
+      same(requests[0], requests[1]) ? pair[0] : load_profile(requests[1].profile, kind, requests[1].options, c.folder);
+  return pair;
+}
+
+void add_findings(const Profile& profile, const std::string& who, std::vector<Caution>& cautions) {
+  for (const Finding& finding : profile.findings)
+    cautions.push_back({finding.code, Severity::note, who + ": " + finding.text});
+}
+
+/// The ellipse on a bench: one contact given by its curvatures.
+Contact bench_contact(const Case& c) {
+  const BenchRequest& bench = *c.bench;
+  Contact contact;
+  contact.on_bench = true;
+  ContactZone& zone = contact.zone;
+  zone.zone = "bench";
+  zone.carries_load = true;
+  zone.normal_force_N = bench.normal_force_N;
+  zone.curvature.rolling_per_mm = bench.curvature_rolling_per_mm;
+  zone.curvature.wheel_across_per_mm = bench.curvature_across_per_mm;
+  zone.curvature.across_per_mm = bench.curvature_across_per_mm;
+  zone.rolling_radius_mm = 1.0 / bench.curvature_rolling_per_mm;
+  zone.ellipse =
+      hertz_ellipse(bench.curvature_rolling_per_mm, bench.curvature_across_per_mm, bench.normal_force_N, c.material);
+  return contact;
+}
+
+/// METHODS: the half-space is questionable where the patch is not small against the radii.
+void caution_half_space(const ContactZone& zone, std::vector<Caution>& cautions) {
+  constexpr double kSmall = 1.0 / 3.0;  // semi-axis over the smallest radius of either body; common practice, no source
+  if (!zone.ellipse) return;
+  const double sharpest =
+      std::max({std::abs(zone.curvature.wheel_across_per_mm), std::abs(zone.curvature.rail_across_per_mm)});
+  const double ratio = zone.ellipse->semi_axis_across_mm * sharpest;
+  if (ratio <= kSmall) return;
+  cautions.push_back({"half_space_questionable", Severity::caution,
+                      "The patch is " + number_text(2.0 * zone.ellipse->semi_axis_across_mm, 2) +
+                          " mm wide where the sharper surface has a radius of " + number_text(1.0 / sharpest, 3) +
+                          " mm: elastic half-spaces overstate the stiffness or pressure there. Check with a finite "
+                          "element model before relying on it."});
+}
+
+}  // namespace
+
+std::shared_ptr<const Locator> prepare(const Case& c) {
+  if (c.bench) return nullptr;
+  auto pairing = std::make_shared<const Pairing>(load_pair(c.wheels, ProfileKind::wheel, c),
+                                                 load_pair(c.rails, ProfileKind::rail, c), c.track, c.wheelset);
+  return std::make_shared<const Locator>(std::move(pairing));
+}
+
+Solution solve(const Case& c, const Progress& progress) {
+  if (!c.bench) progress.at(0.0, "reading profiles");
+  return solve(c, prepare(c), progress);
+}
+
+Solution solve(const Case& c, std::shared_ptr<const Locator> locator, const Progress& progress) {
+  const auto start = Clock::now();
+  Solution solution;
+  solution.asked = c;
+  solution.locator = std::move(locator);
+  if (c.bench) {
+    solution.contacts.push_back(bench_contact(c));
+  } else {
+    progress.at(0.2, "locating contacts");
+    const Located located = solution.locator->loaded(c.state.lateral_mm.front(), c.state.yaw_mrad * 1e-3,
+                                                     c.state.reference, c.load, c.material);
+    solution.pose = located.pose;
+    solution.cautions = located.cautions;
+    for (const ContactZone& zone : located.zones) solution.contacts.emplace_back().zone = zone;
+    const Pairing& pairing = solution.locator->pairing();
+    for (const Side side : {Side::left, Side::right}) {
+      add_findings(pairing.wheel(side), std::string(side_name(side)) + " wheel", solution.cautions);
+      add_findings(pairing.rail(side), std::string(side_name(side)) + " rail", solution.cautions);
+    }
+  }
+  double fraction = 0.3;
+  for (Contact& contact : solution.contacts) {
+    if (!contact.zone.carries_load) continue;
+    progress.at(fraction, "solving the patch");
+    fraction += 0.5 / static_cast<double>(solution.contacts.size());
+    const auto patch_start = Clock::now();
+    contact.patch = hertz_patch(*contact.zone.ellipse, c.patch);
+    contact.patch->solve_ms = since_ms(patch_start);
+    caution_half_space(contact.zone, contact.zone.cautions);
+  }
+  solution.cautions.push_back(
+      {"no_acceptance", Severity::note,
+       "Nothing here is a safety acceptance; the applicable standards and licensed practice decide."});
+  solution.solve_ms = since_ms(start);
+  progress.at(1.0, "solved");
+  return solution;
+}
+
+}  // namespace runband
