@@ -126,14 +126,14 @@ def write(folder, name, title, points):
 def wheel_wear(y, z):
     """A hollow tread, and a flank thinned where it meets the gauge face."""
     tread = 3.6 * step(y, -27.0, 12.0) * (1.0 - step(y, 30.0, 9.0))
-    flank = 1.0 * math.exp(-(((z + 9.0) / 9.0) ** 2)) * step(y, -50.0, 2.0) * (1.0 - step(y, -25.0, 3.0))
+    flank = 1.0 * math.exp(-(((z + 9.0) / 9.0) ** 2)) * step(y, -50.0, 2.0) * (1.0 - step(y, -30.0, 8.0))
     return tread + flank
 
 
 def high_rail_wear(y, z):
     """Crown worn flat, gauge corner and face worn towards the shape of a flange root."""
     crown = 0.9 * math.exp(-(((y + 6.0) / 20.0) ** 2))
-    corner = 1.6 * (1.0 - step(y, -27.5, 4.0))
+    corner = 2.2 * (1.0 - step(y, -27.0, 10.0)) + 0.5 * math.exp(-(((y + 27.0) / 9.0) ** 2))
     face = 1.0 - step(-z, 19.0, 2.5)
     return crown + corner * face
 
