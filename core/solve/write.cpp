@@ -6,6 +6,7 @@
 
 #include "core/base/file.h"
 #include "core/base/text.h"
+#include "core/base/version.h"
 #include "core/case/case_table.h"
 #include "core/solve/solution.h"
 #include "core/solve/vtk_xml.h"
@@ -162,7 +163,7 @@ std::string dump(const Json& json) { return json.dump(2) + "\n"; }
 
 std::string solution_json(const Solution& solution) {
   Json j;
-  j["runband"] = RUNBAND_VERSION;
+  j["runband"] = version();
   j["case"] = to_json(case_table(solution.asked));
   if (!solution.asked.bench) {
     j["state"] = {{"lateral_mm", solution.pose.lateral_mm},
@@ -181,7 +182,7 @@ std::string solution_json(const Solution& solution) {
 
 std::string traverse_json(const Traverse& t) {
   Json j;
-  j["runband"] = RUNBAND_VERSION;
+  j["runband"] = version();
   j["case"] = to_json(case_table(t.asked));
   j["lateral_mm"] = t.lateral_mm;
   j["rolling_radius_difference_mm"] = t.rolling_radius_difference_mm;

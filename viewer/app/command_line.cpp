@@ -5,6 +5,7 @@
 
 #include "core/base/error.h"
 #include "core/base/text.h"
+#include "core/base/version.h"
 #include "viewer/app/commands.h"
 
 namespace runband {
@@ -45,7 +46,7 @@ InputError as_error(const CLI::App& app, const CLI::ParseError& error, int argc,
 int run_command_line(int argc, char** argv, const Progress& progress) {
   CLI::App app{"Where a wheelset touches the track, how hard, and what the touch does."};
   app.name("runband");
-  app.set_version_flag("--version", std::string("runband ") + RUNBAND_VERSION);
+  app.set_version_flag("--version", std::string("runband ") + version());
   app.require_subcommand(1);
   app.footer(
       "Exit status: 0 done, 2 what was written, 3 a file, 4 no convergence, 5 a plugin, 130 stopped.\n"

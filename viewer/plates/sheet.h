@@ -1,0 +1,48 @@
+// What every plate shares: ground, title block, contacts chosen by name.
+#pragma once
+
+#include <string>
+#include <vector>
+
+#include "viewer/plates/plate.h"
+#include "viewer/plot/picture.h"
+#include "viewer/plot/plot.h"
+
+namespace runband {
+
+struct TitleBlock {
+  std::string title;
+  std::vector<std::string> left;   ///< lines under the title
+  std::vector<std::string> right;  ///< lines at the right edge
+};
+
+/// What the title block says of a case: state and load at the left, method, version and checksum at the right.
+TitleBlock title_block(const Case&, const Plate&, const std::string& state);
+/// "lateral 3.25 mm at the axle centre, yaw 0.0 mrad".
+std::string state_text(const Solution&);
+
+/// Draws ground-less title block along the foot of the page; returns what is left of the page above it, inside the
+/// margins.
+plot::Box draw_title_block(const TitleBlock&, plot::Canvas&, const plot::Theme&, const plot::Style&);
+
+plot::PictureOptions picture_options(const Plate&, const Case&);
+
+/// "left tread".
+std::string contact_name(const Contact&);
+/// Indices of the loaded contacts whose name begins with `wanted` or is its side or zone; all if empty.
+/// @throws InputError (unknown_name) naming those there are.
+std::vector<std::size_t> chosen_contacts(const Solution&, const std::string& wanted);
+/// The one of the chosen with the highest peak pressure.
+std::size_t hardest_contact(const Solution&, const std::string& wanted);
+
+void draw_patch_plate(const Solution&, const Plate&, plot::Canvas&);
+void draw_section_plate(const Solution&, const Plate&, plot::Canvas&);
+void draw_traverse_plate(const Traverse&, const Plate&, plot::Canvas&);
+void draw_scene_plate(const Solution&, const Plate&, const std::filesystem::path& out);
+
+/// The pressure of a patch as a heat map in mm of the contact frame.
+plot::HeatMap pressure_map(const Patch&, double highest_MPa);
+/// The ellipse's outline in the contact frame.
+plot::Line ellipse_line(const HertzEllipse&);
+
+}  // namespace runband
