@@ -15,6 +15,10 @@ SlipStencil steady_stencil(UpwindOrder order) {
   return {1 + b / 2, 1 + b, b / 2};
 }
 
+// 1 / (2^p - 1). The error of the forces falls with the power p = 1 to 1.9 of the cell size, measured on the linear creep
+// coefficients; this p is 1.58.
+constexpr double kRichardson = 0.5;
+
 /// Cells too little covered to be solved for take the traction of their best neighbour in proportion to the bound.
 void fill_slivers(const RollingProblem& problem, RollingResult& result) {
   if (problem.area_fraction.empty()) return;
@@ -108,10 +112,10 @@ RollingResult solve_and_extrapolate(const RollingProblem& problem, const Rolling
   RollingResult result = solve(problem, options, steady, progress);
   if (!options.extrapolate || std::max(problem.grid.nx, problem.grid.ns) < 8) return result;
   const RollingResult coarse = solve(halved(problem), options, steady, progress);
-  // The error of the forces falls with the first power of the cell size for either stencil: the edge sets it.
-  result.force_rolling_N += result.force_rolling_N - coarse.force_rolling_N;
-  result.force_across_N += result.force_across_N - coarse.force_across_N;
-  result.moment_normal_Nmm += result.moment_normal_Nmm - coarse.moment_normal_Nmm;
+  const auto extrapolated = [](double fine, double coarser) { return fine + kRichardson * (fine - coarser); };
+  result.force_rolling_N = extrapolated(result.force_rolling_N, coarse.force_rolling_N);
+  result.force_across_N = extrapolated(result.force_across_N, coarse.force_across_N);
+  result.moment_normal_Nmm = extrapolated(result.moment_normal_Nmm, coarse.moment_normal_Nmm);
   result.convolutions += coarse.convolutions / 4;
   result.iterations += coarse.iterations;
   result.used_fallback = result.used_fallback || coarse.used_fallback;

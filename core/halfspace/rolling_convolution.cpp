@@ -66,6 +66,9 @@ void destroy_plan(void* plan) {
 
 namespace {
 
+// Buffers may outlive their thread's pool (other thread-local objects hold some): then they go straight back.
+thread_local bool pool_is_gone = false;
+
 /// Freed buffers of one thread, kept by size: a solve makes and drops a dozen, and giving them back to the system each
 /// time costs as much as transforming them.
 class BufferPool {
@@ -77,6 +80,7 @@ class BufferPool {
     for (auto& shelf : shelves_) {
       for (void* p : shelf) fftw_free(p);
     }
+    pool_is_gone = true;
   }
   /// Of at least `bytes`, content undefined.
   void* take(std::size_t bytes) {
@@ -124,6 +128,7 @@ ComplexBuffer<Real>::ComplexBuffer(std::size_t n, bool zero) : size_(n) {
 
 template <typename Real>
 void ComplexBuffer<Real>::Free::operator()(std::complex<Real>* p) const {
+  if (pool_is_gone) return fftw_free(p);
   pool().give(p, bytes);
 }
 

@@ -63,7 +63,7 @@ void RollingOperator::make_convolutions(const Influence& k) {
       b.data()[to] = scale * std::complex<double>(0.5 * (xx - ss), xs);
     }
   }
-  ComplexBuffer<double> alpha(full->spectrum_size(), false), beta(full->spectrum_size(), false);
+  ComplexBuffer<double> alpha(full->spectrum_size()), beta(full->spectrum_size());
   full->forward(a.data(), alpha.data());
   full->forward(b.data(), beta.data());
   fine_ = {PairTransform<double>::of_size(nx, ns, px, ps), nx, ns, alpha, beta};
@@ -82,7 +82,8 @@ void RollingOperator::make_circulant(const Influence& k, int px, int ps) {
       b.data()[to] = edge ? 0.0 : k.xs(i, j);
     }
   }
-  ComplexBuffer<double> both(full->spectrum_size(), false), cross(full->spectrum_size(), false);
+  ComplexBuffer<double> both(full->spectrum_size()),
+      cross(full->spectrum_size());  // zero: the loops below run over padding
   full->forward(a.data(), both.data());
   full->forward(b.data(), cross.data());
   // All three symbols are real (even kernels, and one odd in both offsets): invert the 2x2 symbol of each frequency.
@@ -91,7 +92,7 @@ void RollingOperator::make_circulant(const Influence& k, int px, int ps) {
   for (std::size_t i = 0; i < both.size(); ++i) floor = std::max({floor, both.data()[i].real(), both.data()[i].imag()});
   floor *= 1e-6;
   const double scale = 1.0 / (static_cast<double>(px) * static_cast<double>(ps));
-  ComplexBuffer<double> alpha(full->spectrum_size(), false), beta(full->spectrum_size(), false);
+  ComplexBuffer<double> alpha(full->spectrum_size()), beta(full->spectrum_size());
   for (std::size_t i = 0; i < both.size(); ++i) {
     const double xx = std::max(both.data()[i].real(), floor), ss = std::max(both.data()[i].imag(), floor);
     const double limit = 0.9 * std::sqrt(xx * ss), xs = std::clamp(cross.data()[i].real(), -limit, limit);
