@@ -2,44 +2,90 @@
 
 #include <algorithm>
 #include <cmath>
+#include <cstring>
 
 namespace runband::halfspace {
 namespace {
 
-// Sixteen partial sums: vectorises, and keeps the rounding error of long float sums small.
-double dot(const float* a, const float* b, std::size_t n) {
-  constexpr std::size_t kLanes = 16;
-  float lane[kLanes] = {};
-  double total = 0;
-  std::size_t i = 0;
-  while (i + kLanes <= n) {
-    const std::size_t stop = std::min(n, i + 256 * kLanes);
-    std::fill(lane, lane + kLanes, 0.0F);
-    for (; i + kLanes <= stop; i += kLanes) {
-      for (std::size_t k = 0; k < kLanes; ++k) lane[k] += a[i + k] * b[i + k];
-    }
-    for (const float v : lane) total += static_cast<double>(v);
-  }
-  for (; i < n; ++i) total += static_cast<double>(a[i]) * static_cast<double>(b[i]);
-  return total;
+typedef float Eight __attribute__((vector_size(32)));
+
+Eight load8(const float* p) {
+  Eight v;
+  std::memcpy(&v, p, sizeof v);
+  return v;
+}
+void store8(float* p, Eight v) { std::memcpy(p, &v, sizeof v); }
+double sum8(Eight v) {
+  double sum = 0;
+  for (int k = 0; k < 8; ++k) sum += static_cast<double>(v[k]);
+  return sum;
 }
 
-void add(float factor, const float* from, float* to, std::size_t n) {
-  for (std::size_t i = 0; i < n; ++i) to[i] += factor * from[i];
+// Sums are carried in single precision over at most this many values, then in double: keeps long sums accurate.
+constexpr std::size_t kRun = 2048;
+constexpr std::size_t kTogether = 4;
+
+/// out[k] = w . v[k] for up to kTogether vectors in one pass over w.
+template <std::size_t K>
+void dots(const float* w, const float* const* v, std::size_t n, double* out) {
+  std::fill(out, out + K, 0.0);
+  std::size_t i = 0;
+  while (i + 16 <= n) {
+    const std::size_t stop = std::min(n, i + kRun);
+    Eight a[K] = {}, b[K] = {};
+    for (; i + 16 <= stop; i += 16) {
+      const Eight w0 = load8(w + i), w1 = load8(w + i + 8);
+      for (std::size_t k = 0; k < K; ++k) {
+        a[k] += w0 * load8(v[k] + i);
+        b[k] += w1 * load8(v[k] + i + 8);
+      }
+    }
+    for (std::size_t k = 0; k < K; ++k) out[k] += sum8(a[k] + b[k]);
+  }
+  for (; i < n; ++i) {
+    for (std::size_t k = 0; k < K; ++k) out[k] += static_cast<double>(w[i]) * static_cast<double>(v[k][i]);
+  }
+}
+
+double dot(const float* a, const float* b, std::size_t n) {
+  double out = 0;
+  dots<1>(a, &b, n, &out);
+  return out;
+}
+
+/// to += sum_k factor[k] from[k].
+template <std::size_t K>
+void add(const double* factor, const float* const* from, float* to, std::size_t n) {
+  float f[K];
+  for (std::size_t k = 0; k < K; ++k) f[k] = static_cast<float>(factor[k]);
+  std::size_t i = 0;
+  for (; i + 8 <= n; i += 8) {
+    Eight t = load8(to + i);
+    for (std::size_t k = 0; k < K; ++k) t += f[k] * load8(from[k] + i);
+    store8(to + i, t);
+  }
+  for (; i < n; ++i) {
+    for (std::size_t k = 0; k < K; ++k) to[i] += f[k] * from[k][i];
+  }
+}
+
+/// Makes w orthogonal to `count` vectors, kTogether at a time (modified Gram-Schmidt between the groups).
+void orthogonalise(float* w, const std::vector<std::vector<float>>& basis, std::size_t count, std::size_t n,
+                   double* h) {
+  const auto group = [&]<std::size_t K>(std::size_t first) {
+    const float* v[K];
+    double minus[K];
+    for (std::size_t k = 0; k < K; ++k) v[k] = basis[first + k].data();
+    dots<K>(w, v, n, h + first);
+    for (std::size_t k = 0; k < K; ++k) minus[k] = -h[first + k];
+    add<K>(minus, v, w, n);
+  };
+  std::size_t i = 0;
+  for (; i + kTogether <= count; i += kTogether) group.template operator()<kTogether>(i);
+  for (; i < count; ++i) group.template operator()<1>(i);
 }
 
 }  // namespace
-
-void LinearSystem::restrict_to_free(float* v) const {
-  const std::size_t n = level->cells();
-  for (std::size_t c = 0; c < n; ++c) {
-    // In stick cells t = 0 and the mask is 1; in slip cells the mask is 0 and v becomes t (t.v).
-    const float tx = tangent[2 * c], ts = tangent[2 * c + 1];
-    const float along = tx * v[2 * c] + ts * v[2 * c + 1];
-    v[2 * c] = mask[2 * c] * v[2 * c] + tx * along;
-    v[2 * c + 1] = mask[2 * c + 1] * v[2 * c + 1] + ts * along;
-  }
-}
 
 void LinearSystem::apply(const float* in, float* out, PairScratch<float>& scratch) const {
   level->op->apply(in, out, scratch);
@@ -55,32 +101,31 @@ void LinearSystem::apply(const float* in, float* out, PairScratch<float>& scratc
   }
 }
 
-void LinearSystem::precondition(const float* in, float* out, PairScratch<float>& scratch) const {
-  const int nx = level->nx(), ns = level->ns();
-  const auto d = static_cast<float>(level->op->own_xx());
-  const auto inverse_kappa = static_cast<float>(1.0 / (2.0 * level->op->influence_own()));
+template <int Strips>
+void LinearSystem::integrate_strips(const float* in, float* out, int first) const {
+  const auto nx = static_cast<std::size_t>(level->nx());
   const SlipStencil& stencil = level->op->shape().stencil;
-  const auto c0 = static_cast<float>(stencil.here), c1 = static_cast<float>(stencil.ahead),
-             c2 = static_cast<float>(stencil.ahead2);
-  const auto damping = static_cast<float>(sigma) * inverse_kappa;
-  for (int j = 0; j < ns; ++j) {
-    float x1 = 0, s1 = 0, x2 = 0, s2 = 0;
-    const std::size_t row = static_cast<std::size_t>(j) * static_cast<std::size_t>(nx);
-    for (int i = nx - 1; i >= 0; --i) {
-      const std::size_t c = row + static_cast<std::size_t>(i);
-      float x = 0, s = 0;
-      if (weight[2 * c] > 0) {
-        const float fx = c1 * x1 - c2 * x2 + d / weight[2 * c] * in[2 * c];
-        const float fs = c1 * s1 - c2 * s2 + d / weight[2 * c + 1] * in[2 * c + 1];
-        const float tx = tangent[2 * c], ts = tangent[2 * c + 1], along = tx * fx + ts * fs;
-        x = (mask[2 * c] * fx + tx * along) / (c0 + damping + own[2 * c] * inverse_kappa);
-        s = (mask[2 * c + 1] * fs + ts * along) / (c0 + damping + own[2 * c + 1] * inverse_kappa);
-      }
-      out[2 * c] = x;
-      out[2 * c + 1] = s;
-      x2 = x1, s2 = s1, x1 = x, s1 = s;
+  const auto c1 = static_cast<float>(stencil.ahead), c2 = static_cast<float>(stencil.ahead2);
+  float x1[Strips] = {}, s1[Strips] = {}, x2[Strips] = {}, s2[Strips] = {};
+  for (std::size_t i = nx; i-- > 0;) {
+    for (int k = 0; k < Strips; ++k) {
+      const std::size_t v = 2 * (static_cast<std::size_t>(first + k) * nx + i);
+      // Outside contact the pivot is zero, which restarts the strip.
+      const float fx = c1 * x1[k] - c2 * x2[k] + gain[v] * in[v];
+      const float fs = c1 * s1[k] - c2 * s2[k] + gain[v + 1] * in[v + 1];
+      const float tx = tangent[v], ts = tangent[v + 1], along = tx * fx + ts * fs;
+      x2[k] = x1[k], s2[k] = s1[k];
+      out[v] = x1[k] = pivot[v] * (mask[v] * fx + tx * along);
+      out[v + 1] = s1[k] = pivot[v + 1] * (mask[v + 1] * fs + ts * along);
     }
   }
+}
+
+void LinearSystem::precondition(const float* in, float* out, PairScratch<float>& scratch) const {
+  // Several strips abreast: each is a chain of dependent steps, together they fill the pipeline.
+  int j = 0;
+  for (; j + 4 <= level->ns(); j += 4) integrate_strips<4>(in, out, j);
+  for (; j < level->ns(); ++j) integrate_strips<1>(in, out, j);
   level->op->solve_circulant(out, out, scratch);
   const std::size_t n = level->cells();
   for (std::size_t c = 0; c < n; ++c) {
@@ -121,11 +166,7 @@ KrylovResult solve_fgmres(const LinearSystem& system, const std::vector<float>& 
     system.precondition(vectors.basis[k].data(), z, scratch);
     system.apply(z, w, scratch);
     double* column = h.data() + k * (m + 1);
-    for (std::size_t i = 0; i <= k; ++i) {
-      const float* v = vectors.basis[i].data();
-      column[i] = dot(w, v, n);
-      add(static_cast<float>(-column[i]), v, w, n);
-    }
+    orthogonalise(w, vectors.basis, k + 1, n, column);
     const double length = std::sqrt(dot(w, w, n));
     column[k + 1] = length;
     if (length > 0) {
@@ -157,8 +198,11 @@ KrylovResult solve_fgmres(const LinearSystem& system, const std::vector<float>& 
     const double pivot = h[i * (m + 1) + i];
     y[i] = pivot != 0 ? sum / pivot : 0;
   }
-  for (std::size_t j = 0; j < k; ++j)
-    add(static_cast<float>(start * y[j]), vectors.directions[j].data(), solution.data(), n);
+  for (std::size_t j = 0; j < k; ++j) {
+    const double factor = start * y[j];
+    const float* z = vectors.directions[j].data();
+    add<1>(&factor, &z, solution.data(), n);
+  }
   return result;
 }
 

@@ -16,6 +16,8 @@ struct LinearSystem {
   std::vector<float> own;      ///< per value: lambda = |s| / g in slip cells, plus the compliance of a cut cell
   std::vector<float>
       weight;  ///< per value: omega = 1 / sqrt(1 + own / kappa), 0 outside; the same for both in slip cells
+  std::vector<float> gain;   ///< per value: D / weight, 0 outside
+  std::vector<float> pivot;  ///< per value: 1 / (here + (own + sigma) / kappa), 0 outside
   double sigma = 0;
 
   /// out = rows applied to in. in != out.
@@ -23,8 +25,10 @@ struct LinearSystem {
   /// out = M in: integrates the upwind stencil along each strip from the leading edge, inverts the circulant of K, and
   /// restricts to the free directions.
   void precondition(const float* in, float* out, PairScratch<float>& scratch) const;
-  /// Removes from v what is outside contact, and in slip cells what is normal to t.
-  void restrict_to_free(float* v) const;
+
+ private:
+  template <int Strips>
+  void integrate_strips(const float* in, float* out, int first) const;
 };
 
 /// Vectors of one Krylov iteration, made as they are needed and kept for the next.

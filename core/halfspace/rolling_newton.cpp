@@ -14,7 +14,7 @@ constexpr double kOuterCost = 2.0;  // of a double convolution in float ones
 std::size_t linearise(const RollingLevel& level, const std::vector<double>& p, const std::vector<double>& slip,
                       double sigma, std::vector<SlipState>& state, LinearSystem& system, std::vector<float>& rhs) {
   const std::size_t n = level.cells();
-  const double d = level.op->own_xx(), kappa = 2.0 * level.op->influence_own();
+  const double d = level.op->own_xx(), kappa = 2.0 * level.op->influence_own(), here = level.op->shape().stencil.here;
   std::size_t changed = 0;
   system.sigma = sigma;
   for (std::size_t c = 0; c < n; ++c) {
@@ -49,6 +49,10 @@ std::size_t linearise(const RollingLevel& level, const std::vector<double>& p, c
     system.own[2 * c + 1] = static_cast<float>(own_s);
     system.weight[2 * c] = static_cast<float>(wx);
     system.weight[2 * c + 1] = static_cast<float>(ws);
+    system.gain[2 * c] = static_cast<float>(d / wx);
+    system.gain[2 * c + 1] = static_cast<float>(d / ws);
+    system.pivot[2 * c] = static_cast<float>(1.0 / (here + (own_x + sigma) / kappa));
+    system.pivot[2 * c + 1] = static_cast<float>(1.0 / (here + (own_s + sigma) / kappa));
   }
   return changed;
 }
@@ -143,6 +147,8 @@ NewtonResult solve_newton(const RollingLevel& level, const NewtonOptions& option
   system.tangent.assign(2 * n, 0.0F);
   system.own.assign(2 * n, 0.0F);
   system.weight.assign(2 * n, 0.0F);
+  system.gain.assign(2 * n, 0.0F);
+  system.pivot.assign(2 * n, 0.0F);
   scratch.rhs.assign(2 * n, 0.0F);
   std::vector<SlipState> state(n, SlipState::open);
   std::vector<double> best_p = p;
