@@ -1,9 +1,8 @@
 // From a case to its solution, one direction: profiles, pairing, zones, patches.
 #include <chrono>
-#include <cmath>
 
 #include "core/base/error.h"
-#include "core/base/text.h"
+#include "core/patch/half_space_patch.h"
 #include "core/solve/solution.h"
 
 namespace runband {
@@ -44,6 +43,7 @@ Contact bench_contact(const Case& c) {
   zone.zone = "bench";
   zone.carries_load = true;
   zone.normal_force_N = bench.normal_force_N;
+  if (!bench.gap_file.empty()) return contact;
   zone.curvature.rolling_per_mm = bench.curvature_rolling_per_mm;
   zone.curvature.wheel_across_per_mm = bench.curvature_across_per_mm;
   zone.curvature.across_per_mm = bench.curvature_across_per_mm;
@@ -53,19 +53,45 @@ Contact bench_contact(const Case& c) {
   return contact;
 }
 
-/// METHODS: the half-space is questionable where the patch is not small against the radii.
-void caution_half_space(const ContactZone& zone, std::vector<Caution>& cautions) {
-  constexpr double kSmall = 1.0 / 3.0;  // semi-axis over the smallest radius of either body; common practice, no source
-  if (!zone.ellipse) return;
-  const double sharpest =
-      std::max({std::abs(zone.curvature.wheel_across_per_mm), std::abs(zone.curvature.rail_across_per_mm)});
-  const double ratio = zone.ellipse->semi_axis_across_mm * sharpest;
-  if (ratio <= kSmall) return;
-  cautions.push_back({"half_space_questionable", Severity::caution,
-                      "The patch is " + number_text(2.0 * zone.ellipse->semi_axis_across_mm, 2) +
-                          " mm wide where the sharper surface has a radius of " + number_text(1.0 / sharpest, 3) +
-                          " mm: elastic half-spaces overstate the stiffness or pressure there. Check with a finite "
-                          "element model before relying on it."});
+/// The elastic half-space for every loaded contact; zones that press on each other share one patch.
+void solve_half_spaces(Solution& solution, const Progress& progress) {
+  const Case& c = solution.asked;
+  if (c.bench) {
+    const BenchRequest& bench = *c.bench;
+    if (bench.gap_file.empty()) {
+      solution.contacts.front().patch =
+          half_space_patch(bench.curvature_rolling_per_mm, bench.curvature_across_per_mm, bench.normal_force_N,
+                           c.material, c.patch, progress);
+    } else {
+      solution.contacts.front().patch = half_space_patch(read_gap_grid(c.folder / bench.gap_file), bench.normal_force_N,
+                                                         c.material, c.patch, progress);
+    }
+    return;
+  }
+  std::vector<ContactZone> zones;
+  for (const Contact& contact : solution.contacts) zones.push_back(contact.zone);
+  const auto groups = zones_solved_together(zones);
+  double done = 0;
+  for (const auto& group : groups) {
+    progress.at(0.3 + 0.5 * done++ / static_cast<double>(groups.size()), "solving the patch");
+    Contact& leader = solution.contacts[group.front()];
+    leader.patch = half_space_patch(*solution.locator, zones, group, solution.pose, c.material, c.patch, progress);
+    for (std::size_t k = 1; k < group.size(); ++k) {
+      solution.contacts[group[k]].zone.cautions.push_back(
+          {"patch_shared", Severity::note,
+           "Its load is part of the patch of the " + leader.zone.zone + " zone beside it, which it overlaps."});
+    }
+  }
+}
+
+void solve_patches(Solution& solution, const Progress& progress) {
+  if (solution.asked.patch.method == PatchMethod::half_space) return solve_half_spaces(solution, progress);
+  for (Contact& contact : solution.contacts) {
+    if (!contact.zone.carries_load) continue;
+    const auto start = Clock::now();
+    contact.patch = hertz_patch(*contact.zone.ellipse, solution.asked.patch);
+    contact.patch->solve_ms = since_ms(start);
+  }
 }
 
 }  // namespace
@@ -102,15 +128,11 @@ Solution solve(const Case& c, std::shared_ptr<const Locator> locator, const Prog
       add_findings(pairing.rail(side), std::string(side_name(side)) + " rail", solution.cautions);
     }
   }
-  double fraction = 0.3;
+  solve_patches(solution, progress);
   for (Contact& contact : solution.contacts) {
-    if (!contact.zone.carries_load) continue;
-    progress.at(fraction, "solving the patch");
-    fraction += 0.5 / static_cast<double>(solution.contacts.size());
-    const auto patch_start = Clock::now();
-    contact.patch = hertz_patch(*contact.zone.ellipse, c.patch);
-    contact.patch->solve_ms = since_ms(patch_start);
-    caution_half_space(contact.zone, contact.zone.cautions);
+    if (!contact.patch) continue;
+    auto& cautions = contact.zone.cautions;
+    cautions.insert(cautions.end(), contact.patch->cautions.begin(), contact.patch->cautions.end());
   }
   solution.cautions.push_back(
       {"no_acceptance", Severity::note,

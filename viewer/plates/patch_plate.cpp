@@ -58,10 +58,10 @@ void draw_figures(const Contact& contact, const Box& box, plot::Canvas& canvas, 
   }
   const double step = 3.6 * style.mm;
   const int columns = box.width > 85 * style.mm ? 2 : 1;
-  const double width = std::min(52 * style.mm, (box.width - (columns - 1) * 6 * style.mm) / columns);
+  const double width = std::min(60 * style.mm, (box.width - (columns - 1) * 6 * style.mm) / columns);
   const std::size_t per_column =
       (rows.size() + static_cast<std::size_t>(columns) - 1) / static_cast<std::size_t>(columns);
-  const double left = box.x + (box.width - columns * width - (columns - 1) * 6 * style.mm) / 2;
+  const double left = box.x;
   for (std::size_t i = 0; i < rows.size(); ++i) {
     const double y = box.y + step * static_cast<double>(i % per_column + 1) - 0.6 * style.mm;
     if (y > box.bottom()) continue;
@@ -87,9 +87,9 @@ void draw_patch_plate(const Solution& solution, const Plate& plate, plot::Canvas
     half_x = std::max(half_x, x);
     half_s = std::max(half_s, s);
   }
-  // Room for the scale disc beside the patch.
-  half_x = std::max(half_x * 1.15, 7.5);
-  half_s = std::max(half_s * 1.35, 7.0);
+  half_x = std::max(half_x * 1.08, 7.5);
+  // Below the patch there is room for the scale disc, above it for the arrow.
+  const plot::Range across{-half_s - 11.5, half_s + 3.0};
 
   const double bar_height = 9.5 * style.mm;
   const bool wide = body.width >= body.height * 0.9;
@@ -109,7 +109,7 @@ void draw_patch_plate(const Solution& solution, const Plate& plate, plot::Canvas
   for (std::size_t k = 0; k < chosen.size(); ++k) {
     plots.push_back(patch_plot(solution.contacts[chosen[k]], highest));
     plots.back().x.range = plot::Range{-half_x, half_x};
-    plots.back().y.range = plot::Range{-half_s, half_s};
+    plots.back().y.range = across;
     plots.back().disc = plot::ScaleDisc{};
     const auto step = static_cast<double>(k);
     const Box cell{body.x + (wide ? step * (cell_width + gap) : 0), body.y + (wide ? 0 : step * (cell_height + gap)),
@@ -118,7 +118,7 @@ void draw_patch_plate(const Solution& solution, const Plate& plate, plot::Canvas
     const plot::Margins m =
         plot::margins_of(plots.back(), canvas, style, boxes.back().width * 0.9, boxes.back().height * 0.8);
     scale = std::min({scale, (boxes.back().width - m.left - m.right) / (2 * half_x),
-                      (boxes.back().height - m.top - m.bottom) / (2 * half_s)});
+                      (boxes.back().height - m.top - m.bottom) / across.span()});
   }
   for (std::size_t k = 0; k < chosen.size(); ++k) {
     const Contact& contact = solution.contacts[chosen[k]];

@@ -37,17 +37,25 @@ std::string state_text(const Solution& solution) {
          plot::number(solution.pose.yaw_rad * 1e3, 1) + " mrad";
 }
 
+namespace {
+
+std::string load_text(const Case& c) {
+  const auto [left, right] = c.load.vertical_N;
+  return "; wheel load " + plot::number(left * 1e-3, 1) +
+         (left == right ? "" : " and " + plot::number(right * 1e-3, 1)) + " kN";
+}
+
+}  // namespace
+
 TitleBlock title_block(const Case& c, const Plate& plate, const std::string& state) {
   TitleBlock block;
   block.title = c.title.empty() ? "Untitled case" : c.title;
   std::string second = state;
+  if (!c.bench && plate.kind != "traverse") second += load_text(c);
   if (!c.bench) {
     const double slope = std::tan(c.track.inclination_rad);
-    second +=
-        "; wheel load " + plot::number(c.load.vertical_N[0] * 1e-3, 1) +
-        (c.load.vertical_N[0] == c.load.vertical_N[1] ? "" : " and " + plot::number(c.load.vertical_N[1] * 1e-3, 1)) +
-        " kN; gauge " + plot::number(c.track.gauge_mm, 1) + " mm" +
-        (slope > 0 ? ", rails 1 : " + plot::number(1.0 / slope, 0) : ", rails upright");
+    second += "; gauge " + plot::number(c.track.gauge_mm, 1) + " mm" +
+              (slope > 0 ? ", rails 1 : " + plot::number(1.0 / slope, 0) : ", rails upright");
   }
   block.left = {second};
   std::string method = c.patch.method == PatchMethod::hertz

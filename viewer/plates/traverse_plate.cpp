@@ -41,6 +41,7 @@ void draw_traverse_plate(const Traverse& t, const Plate& plate, plot::Canvas& ca
   std::string state = "lateral displacement at ";
   state += t.asked.state.reference == LateralReference::axle ? "the axle centre" : "rail level";
   state += ", yaw " + plot::number(t.asked.state.yaw_mrad, 1) + " mrad";
+  if (!t.jumps.empty()) state += "; red posts: contact jumps";
   const Box body = draw_title_block(title_block(t.asked, plate, state), canvas, theme, style);
 
   const Side left = Side::left, right = Side::right;
@@ -48,7 +49,7 @@ void draw_traverse_plate(const Traverse& t, const Plate& plate, plot::Canvas& ca
   std::vector<plot::Plot> plots(4);
   const auto set_up = [&](plot::Plot& p, const std::string& title, const std::string& unit) {
     p.title = title;
-    p.y.unit = unit;
+    p.caption = unit;
     p.x.numbers = false;
     p.x.range = plot::Range{t.lateral_mm.front(), std::max(t.lateral_mm.back(), t.lateral_mm.front() + 1e-9)};
   };
@@ -68,7 +69,6 @@ void draw_traverse_plate(const Traverse& t, const Plate& plate, plot::Canvas& ca
   plots[3].x.unit = "mm";
   for (plot::Plot& p : plots)
     for (const ContactJump& jump : t.jumps) p.posts.push_back({jump.lateral_mm, "", {plot::Ink::warning, 1, {}}});
-  if (!t.jumps.empty()) plots[3].posts.front().label = t.jumps.size() == 1 ? "contact jumps here" : "contact jumps";
 
   // One column where the page is tall, two by two where it is wide.
   const bool two_columns = body.width > 1.25 * body.height && body.width > 120 * style.mm;
@@ -84,25 +84,31 @@ void draw_traverse_plate(const Traverse& t, const Plate& plate, plot::Canvas& ca
   std::vector<plot::Margins> margins;
   for (const plot::Plot& p : plots)
     margins.push_back(plot::margins_of(p, canvas, style, width * 0.9, body.height / static_cast<double>(rows) * 0.8));
+  // Plots of a row share top and bottom, plots of a column left and right.
+  for (std::size_t k = 0; k < margins.size(); ++k) {
+    for (std::size_t other = 0; other < margins.size(); ++other) {
+      if (other / columns == k / columns) {
+        margins[k].top = std::max(margins[k].top, margins[other].top);
+        margins[k].bottom = std::max(margins[k].bottom, margins[other].bottom);
+      }
+      if (other % columns == k % columns) {
+        margins[k].left = std::max(margins[k].left, margins[other].left);
+        margins[k].right = std::max(margins[k].right, margins[other].right);
+      }
+    }
+  }
   double sum = 0;
   for (std::size_t r = 0; r < rows; ++r) sum += margins[r * columns].top + margins[r * columns].bottom;
   const double data_height = (body.height - sum - gap * static_cast<double>(rows - 1)) / static_cast<double>(rows);
   double y = body.y;
   for (std::size_t r = 0; r < rows; ++r) {
-    double used = 0;
+    const double height = margins[r * columns].top + margins[r * columns].bottom + data_height;
     for (std::size_t c = 0; c < columns; ++c) {
       const std::size_t k = r * columns + c;
-      plot::Margins m = margins[k];
-      for (std::size_t other = c; other < plots.size(); other += columns) {
-        m.left = std::max(m.left, margins[other].left);
-        m.right = std::max(m.right, margins[other].right);
-      }
-      used = std::max(used, m.top + m.bottom + data_height);
-      plot::draw_plot(plots[k],
-                      {body.x + static_cast<double>(c) * (width + gap), y, width, m.top + m.bottom + data_height},
-                      canvas, theme, style, m);
+      plot::draw_plot(plots[k], {body.x + static_cast<double>(c) * (width + gap), y, width, height}, canvas, theme,
+                      style, margins[k]);
     }
-    y += used + gap;
+    y += height + gap;
   }
 }
 

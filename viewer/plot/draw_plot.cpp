@@ -9,6 +9,7 @@ namespace {
 
 // Gaps in millimetres.
 constexpr double kGap = 1.2;          // between a tick and its number, and between rows of words
+constexpr double kTitleDrop = 0.6;    // further between the numbers and the axis title
 constexpr double kTickLength = 1.4;   // labelled ticks of the ruler
 constexpr double kMinorTick = 0.8;    // the others
 constexpr double kPostLength = 1.8;   // marks of events
@@ -123,7 +124,7 @@ class Painter {
     }
     if (plot_.x.numbers && !plot_.x.title.empty()) {
       const TextSize size = canvas_.measure("0", font);
-      const double below = bottom + (kTickLength + 2 * kGap + 0.6) * mm + 2 * size.ascent;
+      const double below = bottom + (kTickLength + 2 * kGap + kTitleDrop) * mm + 2 * size.ascent;
       set({frame_.data.right(), below}, with_unit(plot_.x), font, theme_.quiet, Anchor::end);
     }
     if (!plot_.y.numbers) return;
@@ -369,7 +370,7 @@ Margins margins_of(const Plot& plot, const Canvas& canvas, const Style& style, d
   if (plot.pointer && !plot.pointer->label.empty()) margins.top = std::max(margins.top, small.ascent + 2 * gap);
   if (plot.x.numbers) {
     margins.bottom += gap + small.ascent + small.descent;
-    if (!plot.x.title.empty()) margins.bottom += gap + small.ascent + small.descent * 0.6;
+    if (!plot.x.title.empty()) margins.bottom += gap + kTitleDrop * style.mm + small.ascent;
     const auto ticks = ticks_of(plot.x, range_of(plot.x, plot, true), data_width, kNumberEvery * style.mm);
     double last = 0;
     for (const Tick& tick : ticks)
