@@ -71,9 +71,10 @@ class BadInput : public testing::Test {
     std::ofstream(inside / "a_file") << "a file\n";
     const auto before = contents(inside);
 
-    const std::string command = "cd '" + inside.string() + "' && CASES='" RUNBAND_TESTS "/bad_input/cases' '" +
-                                RUNBAND_PROGRAM + "' " + mistake_.arguments + " >'" + (place / "out").string() +
-                                "' 2>'" + (place / "err").string() + "' </dev/null";
+    const std::string command = "cd '" + inside.string() +
+                                "' && export CASES='" RUNBAND_TESTS "/bad_input/cases' && '" + RUNBAND_PROGRAM + "' " +
+                                mistake_.arguments + " >'" + (place / "out").string() + "' 2>'" +
+                                (place / "err").string() + "' </dev/null";
     const int status = std::system(command.c_str());
     const std::string said = bytes_of(place / "err");
     SCOPED_TRACE("table.txt:" + std::to_string(mistake_.line) + ": runband " + mistake_.arguments + "\n" + said);

@@ -107,8 +107,8 @@ void SvgCanvas::image(const Box& box, const Image& picture, bool smooth) {
   if (picture.width <= 0 || picture.height <= 0) return;
   body_ += "<image x=\"" + coordinate(box.x) + "\" y=\"" + coordinate(box.y) + "\" width=\"" + coordinate(box.width) +
            "\" height=\"" + coordinate(box.height) + "\" preserveAspectRatio=\"none\"" +
-           (smooth ? "" : " style=\"image-rendering:crisp-edges;image-rendering:pixelated\"") +
-           " href=\"" + data_address("image/png", png_bytes(picture, 96, {}, false)) + "\"/>\n";
+           (smooth ? "" : " style=\"image-rendering:crisp-edges;image-rendering:pixelated\"") + " href=\"" +
+           data_address("image/png", png_bytes(picture, 96, {}, false)) + "\"/>\n";
 }
 
 void SvgCanvas::push_clip(std::span<const Point> outline) {
