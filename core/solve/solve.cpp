@@ -59,9 +59,8 @@ void solve_half_spaces(Solution& solution, const Progress& progress) {
   if (c.bench) {
     const BenchRequest& bench = *c.bench;
     if (bench.gap_file.empty()) {
-      solution.contacts.front().patch =
-          half_space_patch(bench.curvature_rolling_per_mm, bench.curvature_across_per_mm, bench.normal_force_N,
-                           c.material, c.patch, progress);
+      solution.contacts.front().patch = half_space_patch(bench.curvature_rolling_per_mm, bench.curvature_across_per_mm,
+                                                         bench.normal_force_N, c.material, c.patch, progress);
     } else {
       solution.contacts.front().patch = half_space_patch(read_gap_grid(c.folder / bench.gap_file), bench.normal_force_N,
                                                          c.material, c.patch, progress);
