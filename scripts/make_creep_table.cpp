@@ -12,11 +12,15 @@
 using namespace runband::halfspace;
 
 int main() {
-  constexpr int kR = kCreepTableRatios, kN = kCreepTableNus, kDegree = 64;
+  constexpr std::size_t kR = kCreepTableRatios, kN = kCreepTableNus;
+  constexpr int kDegree = 64;
   std::vector<std::array<double, 4>> value(kR * kN);
-  const auto node = [](int i, int n) { return std::cos(std::numbers::pi * (i + 0.5) / n); };
-  for (int i = 0; i < kR; ++i) {
-    for (int j = 0; j < kN; ++j) {
+  const auto angle = [](std::size_t i, std::size_t n) {
+    return std::numbers::pi * (static_cast<double>(i) + 0.5) / static_cast<double>(n);
+  };
+  const auto node = [&](std::size_t i, std::size_t n) { return std::cos(angle(i, n)); };
+  for (std::size_t i = 0; i < kR; ++i) {
+    for (std::size_t j = 0; j < kN; ++j) {
       const CreepCoefficients c =
           compute_creep_coefficients(std::exp(node(i, kR) * kCreepTableLogRatio), 0.25 * (1 + node(j, kN)), kDegree);
       value[i * kN + j] = {std::log(c.c11), std::log(c.c22), std::log(c.c23), std::log(c.c33)};
@@ -28,19 +32,20 @@ int main() {
                "// Written by scripts/make_creep_table.sh; do not edit.\n// clang-format off\n"
                "#include \"core/halfspace/creep_coefficients_table.h\"\n\nnamespace runband::halfspace {\n\n"
                "const double kCreepTable[4][kCreepTableRatios][kCreepTableNus] = {\n");
-  for (int k = 0; k < 4; ++k) {
+  for (std::size_t k = 0; k < 4; ++k) {
     std::fprintf(f, "  {\n");
-    for (int p = 0; p < kR; ++p) {
+    for (std::size_t p = 0; p < kR; ++p) {
       std::fprintf(f, "    {");
-      for (int q = 0; q < kN; ++q) {
+      for (std::size_t q = 0; q < kN; ++q) {
         double sum = 0;
-        for (int i = 0; i < kR; ++i) {
-          for (int j = 0; j < kN; ++j) {
-            sum += value[i * kN + j][k] * std::cos(std::numbers::pi * p * (i + 0.5) / kR) *
-                   std::cos(std::numbers::pi * q * (j + 0.5) / kN);
+        for (std::size_t i = 0; i < kR; ++i) {
+          for (std::size_t j = 0; j < kN; ++j) {
+            sum += value[i * kN + j][k] * std::cos(static_cast<double>(p) * angle(i, kR)) *
+                   std::cos(static_cast<double>(q) * angle(j, kN));
           }
         }
-        std::fprintf(f, "%s%.9g", q > 0 ? ", " : "", sum * (p > 0 ? 2.0 : 1.0) * (q > 0 ? 2.0 : 1.0) / (kR * kN));
+        std::fprintf(f, "%s%.9g", q > 0 ? ", " : "",
+                     sum * (p > 0 ? 2.0 : 1.0) * (q > 0 ? 2.0 : 1.0) / static_cast<double>(kR * kN));
       }
       std::fprintf(f, "},\n");
     }

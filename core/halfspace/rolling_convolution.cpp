@@ -103,7 +103,7 @@ class BufferPool {
   }
 
  private:
-  static constexpr std::size_t kMostHeld = std::size_t{16} << 20;
+  static constexpr std::size_t kMostHeld = std::size_t{64} << 20;
   static std::size_t shelf_of(std::size_t bytes) {
     return std::max<std::size_t>(8, static_cast<std::size_t>(std::bit_width(bytes - 1)));
   }

@@ -9,7 +9,7 @@ namespace {
 
 constexpr int kCoarsestCells = 27;
 constexpr double kCoarseTolerance = 1e-3;
-constexpr std::size_t kKeptCells = 128 * 128;
+constexpr std::size_t kKeptCells = 256 * 256;
 
 double squared(const std::vector<double>& v) {
   double sum = 0;

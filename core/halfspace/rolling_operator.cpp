@@ -63,7 +63,7 @@ void RollingOperator::make_convolutions(const Influence& k) {
       b.data()[to] = scale * std::complex<double>(0.5 * (xx - ss), xs);
     }
   }
-  ComplexBuffer<double> alpha(full->spectrum_size()), beta(full->spectrum_size());
+  ComplexBuffer<double> alpha(full->spectrum_size(), false), beta(full->spectrum_size(), false);
   full->forward(a.data(), alpha.data());
   full->forward(b.data(), beta.data());
   fine_ = {PairTransform<double>::of_size(nx, ns, px, ps), nx, ns, alpha, beta};

@@ -1,7 +1,7 @@
 // Simplified theory of rolling contact: each point of the surface is its own spring.
 //
 // Linear in the number of elements and without a matrix: a thousand times faster than the half-space, and within about
-// ten per cent of it for elliptic patches (the map of errors is made by tests/halfspace/simplified_map_test.cpp).
+// ten per cent of it for elliptic patches (the map of errors is made by tests/halfspace/simplified_test.cpp).
 #pragma once
 
 #include "core/halfspace/creep_coefficients.h"
