@@ -1,0 +1,278 @@
+#include "viewer/scene/scene_picture.h"
+
+#include <vtkActor.h>
+#include <vtkCamera.h>
+#include <vtkCellArray.h>
+#include <vtkCellData.h>
+#include <vtkFeatureEdges.h>
+#include <vtkGenericOpenGLRenderWindow.h>
+#include <vtkLight.h>
+#include <vtkNew.h>
+#include <vtkPoints.h>
+#include <vtkPolyData.h>
+#include <vtkPolyDataMapper.h>
+#include <vtkPolyDataNormals.h>
+#include <vtkProperty.h>
+#include <vtkRenderer.h>
+#include <vtkUnsignedCharArray.h>
+
+#include <algorithm>
+#include <cmath>
+#include <numbers>
+
+#include "core/base/error.h"
+#include "viewer/plot/colour_map.h"
+#include "viewer/scene/headless_gl.h"
+#include "viewer/scene/scene_meshes.h"
+
+namespace runband {
+
+namespace {
+
+constexpr int kFiner = 2;  // drawn at twice the size and averaged down: smooth edges, same bits every time
+
+vtkNew<vtkPolyData> poly_data(const TriangleMesh& mesh, double highest) {
+  vtkNew<vtkPolyData> data;
+  vtkNew<vtkPoints> points;
+  points->SetDataTypeToDouble();
+  for (const Vec3& v : mesh.vertices) points->InsertNextPoint(v.x(), v.y(), v.z());
+  vtkNew<vtkCellArray> triangles;
+  for (const auto& t : mesh.triangles) {
+    const vtkIdType ids[3] = {t[0], t[1], t[2]};
+    triangles->InsertNextCell(3, ids);
+  }
+  data->SetPoints(points);
+  data->SetPolys(triangles);
+  if (!mesh.scalar.empty()) {
+    vtkNew<vtkUnsignedCharArray> colours;
+    colours->SetNumberOfComponents(3);
+    colours->SetName("colour");
+    for (const auto& t : mesh.triangles) {
+      const plot::Colour c =
+          plot::colour_at(plot::ColourMap::ember, mesh.scalar[static_cast<std::size_t>(t[0])] / highest);
+      colours->InsertNextTuple3(plot::byte_of(c.r), plot::byte_of(c.g), plot::byte_of(c.b));
+    }
+    data->GetCellData()->SetScalars(colours);
+  }
+  return data;
+}
+
+/// Shaded surface with its sharp edges as ink lines.
+void add_body(vtkRenderer* renderer, const TriangleMesh& mesh, const plot::Colour& fill, const plot::Colour& ink,
+              double opacity, double line_px) {
+  const auto data = poly_data(mesh, 1);
+  vtkNew<vtkPolyDataNormals> normals;
+  normals->SetInputData(data);
+  normals->SetFeatureAngle(30);
+  normals->SplittingOn();
+  normals->ConsistencyOff();
+  vtkNew<vtkPolyDataMapper> mapper;
+  mapper->SetInputConnection(normals->GetOutputPort());
+  mapper->ScalarVisibilityOff();
+  vtkNew<vtkActor> actor;
+  actor->SetMapper(mapper);
+  actor->GetProperty()->SetColor(fill.r, fill.g, fill.b);
+  actor->GetProperty()->SetAmbient(0.50);
+  actor->GetProperty()->SetDiffuse(0.50);
+  actor->GetProperty()->SetSpecular(0.0);
+  actor->GetProperty()->SetOpacity(opacity);
+  if (opacity < 1) actor->GetProperty()->BackfaceCullingOn();
+  renderer->AddActor(actor);
+
+  vtkNew<vtkFeatureEdges> edges;
+  edges->SetInputData(data);
+  edges->BoundaryEdgesOff();
+  edges->NonManifoldEdgesOff();
+  edges->ManifoldEdgesOff();
+  edges->FeatureEdgesOn();
+  edges->SetFeatureAngle(35);
+  edges->ColoringOff();
+  vtkNew<vtkPolyDataMapper> edge_mapper;
+  edge_mapper->SetInputConnection(edges->GetOutputPort());
+  edge_mapper->ScalarVisibilityOff();
+  vtkNew<vtkActor> edge_actor;
+  edge_actor->SetMapper(edge_mapper);
+  edge_actor->GetProperty()->SetColor(ink.r, ink.g, ink.b);
+  edge_actor->GetProperty()->LightingOff();
+  edge_actor->GetProperty()->SetLineWidth(static_cast<float>(line_px));
+  edge_actor->GetProperty()->SetOpacity(opacity < 1 ? 0.45 : 1.0);
+  renderer->AddActor(edge_actor);
+}
+
+void add_patch(vtkRenderer* renderer, const Contact& contact, double highest) {
+  const auto data = poly_data(patch_sheet(contact, 0.4), highest);
+  vtkNew<vtkPolyDataMapper> mapper;
+  mapper->SetInputData(data);
+  vtkNew<vtkActor> actor;
+  actor->SetMapper(mapper);
+  actor->GetProperty()->LightingOff();
+  renderer->AddActor(actor);
+}
+
+void aim(vtkRenderer* renderer, const Contact& contact) {
+  const Vec3 target = contact.zone.track_mm;
+  const double sign = side_sign(contact.zone.side);
+  // From ahead, above, and a little from the middle of the track: rail head, tread and end section are all seen.
+  const Vec3 centre = target + Vec3(60.0, sign * 5.0, 8.0);
+  const Vec3 eye = centre + Vec3(690.0, -sign * 400.0, 420.0);
+  vtkCamera* camera = renderer->GetActiveCamera();
+  camera->SetFocalPoint(centre.x(), centre.y(), centre.z());
+  camera->SetPosition(eye.x(), eye.y(), eye.z());
+  camera->SetViewUp(0, 0, 1);
+  camera->SetViewAngle(24);
+}
+
+plot::Image averaged(const unsigned char* rgba, int width, int height) {
+  plot::Image image{width, height, std::vector<std::uint8_t>(static_cast<std::size_t>(width * height) * 4)};
+  const int wide = width * kFiner;
+  for (int y = 0; y < height; ++y) {
+    for (int x = 0; x < width; ++x) {
+      for (int c = 0; c < 4; ++c) {
+        int sum = 0;
+        for (int k = 0; k < kFiner * kFiner; ++k) {
+          const int from_x = x * kFiner + k % kFiner, from_y = (height - 1 - y) * kFiner + k / kFiner;
+          sum += rgba[(static_cast<std::size_t>(from_y) * static_cast<std::size_t>(wide) +
+                       static_cast<std::size_t>(from_x)) *
+                          4 +
+                      static_cast<std::size_t>(c)];
+        }
+        image.rgba[(static_cast<std::size_t>(y) * static_cast<std::size_t>(width) + static_cast<std::size_t>(x)) * 4 +
+                   static_cast<std::size_t>(c)] =
+            static_cast<std::uint8_t>((sum + kFiner * kFiner / 2) / (kFiner * kFiner));
+      }
+    }
+  }
+  return image;
+}
+
+plot::Image rendered(vtkGenericOpenGLRenderWindow* window, vtkRenderer* renderer, const plot::Colour& ground, int width,
+                     int height) {
+  renderer->SetBackground(ground.r, ground.g, ground.b);
+  window->Render();
+  vtkNew<vtkUnsignedCharArray> pixels;
+  window->GetRGBACharPixelData(0, 0, width * kFiner - 1, height * kFiner - 1, 0, pixels);
+  plot::Image image = averaged(pixels->GetPointer(0), width, height);
+  for (std::size_t k = 3; k < image.rgba.size(); k += 4) image.rgba[k] = 255;
+  return image;
+}
+
+/// The alpha and colour that give both pictures on black and on white.
+plot::Image solved_alpha(const plot::Image& black, const plot::Image& white) {
+  plot::Image image = black;
+  for (std::size_t k = 0; k < image.rgba.size(); k += 4) {
+    int alpha = 0;
+    for (std::size_t c = 0; c < 3; ++c) alpha = std::max(alpha, 255 - (white.rgba[k + c] - black.rgba[k + c]));
+    alpha = std::clamp(alpha, 0, 255);
+    for (std::size_t c = 0; c < 3; ++c)
+      image.rgba[k + c] = alpha == 0 ? 0 : static_cast<std::uint8_t>(std::min(255, black.rgba[k + c] * 255 / alpha));
+    image.rgba[k + 3] = static_cast<std::uint8_t>(alpha);
+  }
+  return image;
+}
+
+void require_wheelset(const Solution& solution) {
+  if (solution.locator == nullptr)
+    throw InputError(ErrorCode::conflicting_keys, "draw: a bench case has no wheelset to show.", "use --plate patch.");
+}
+
+}  // namespace
+
+ScenePicture draw_scene(const Solution& solution, const SceneOptions& options) {
+  require_wheelset(solution);
+  const plot::Theme& theme = plot::theme(options.theme);
+  const Contact& looked_at = solution.contacts.at(options.contact);
+  double highest = 0;
+  for (const Contact& c : solution.contacts)
+    if (c.patch) highest = std::max(highest, c.patch->peak_pressure_MPa);
+
+  const HeadlessGl gl;
+  vtkNew<vtkGenericOpenGLRenderWindow> window;
+  window->SetOwnContext(0);
+  window->SetReadyForRendering(true);
+  window->SetSupportsOpenGL(1);
+  window->SetIsCurrent(true);
+  window->SetMapped(1);
+  window->SetMultiSamples(0);
+  window->SetFrameBlitModeToNoBlit();
+  window->SetSize(options.width_px * kFiner, options.height_px * kFiner);
+  window->InitializeFromCurrentContext();
+  vtkNew<vtkRenderer> renderer;
+  renderer->SetGradientBackground(false);
+  window->AddRenderer(renderer);
+
+  const double line_px = std::max(1.0, 0.25 * options.pixels_per_mm * kFiner);
+  const MeshOptions fine{.chord_error_mm = 0.03, .max_edge_mm = 60};
+  const MeshOptions round{.chord_error_mm = 0.06};
+  for (const Side side : {Side::left, Side::right}) {
+    add_body(renderer, placed_rail(solution, side, fine), theme.rail_fill, theme.ink, 1.0, line_px);
+    // The wheel over the looked-at patch is glass, so that the patch is seen.
+    const bool over = side == looked_at.zone.side;
+    add_body(renderer, placed_wheel(solution, side, round), theme.wheel_fill, theme.ink, over ? 0.34 : 1.0, line_px);
+  }
+  add_body(renderer, placed_axle(solution, round), theme.wheel_fill, theme.ink, 1.0, line_px);
+  for (const Contact& c : solution.contacts)
+    if (c.patch) add_patch(renderer, c, highest);
+
+  renderer->AutomaticLightCreationOff();
+  vtkNew<vtkLight> light;
+  light->SetLightTypeToCameraLight();
+  light->SetPosition(-0.5, 0.9, 1.0);
+  renderer->AddLight(light);
+  vtkNew<vtkLight> fill;
+  fill->SetLightTypeToCameraLight();
+  fill->SetPosition(1.0, 0.1, 0.6);
+  fill->SetIntensity(0.4);
+  renderer->AddLight(fill);
+  aim(renderer, looked_at);
+  renderer->ResetCameraClippingRange();
+
+  ScenePicture picture;
+  const plot::Colour black{0, 0, 0, 1}, white{1, 1, 1, 1};
+  if (options.transparent) {
+    const plot::Image on_black = rendered(window, renderer, black, options.width_px, options.height_px);
+    picture.image = solved_alpha(on_black, rendered(window, renderer, white, options.width_px, options.height_px));
+  } else {
+    picture.image = rendered(window, renderer, theme.scene, options.width_px, options.height_px);
+  }
+  const auto project = [&](const Vec3& p) {
+    renderer->SetWorldPoint(p.x(), p.y(), p.z(), 1);
+    renderer->WorldToDisplay();
+    const double* display = renderer->GetDisplayPoint();
+    return plot::Point{display[0] / kFiner, options.height_px - display[1] / kFiner};
+  };
+  picture.contact_px = project(looked_at.zone.track_mm);
+  // A millimetre across the line of sight.
+  const vtkCamera* camera = renderer->GetActiveCamera();
+  const double distance = (Vec3(const_cast<vtkCamera*>(camera)->GetPosition()) - looked_at.zone.track_mm).norm();
+  picture.px_per_mm =
+      options.height_px /
+      (2 * distance * std::tan(const_cast<vtkCamera*>(camera)->GetViewAngle() * std::numbers::pi / 360));
+  window->Finalize();
+  return picture;
+}
+
+void write_scene_glb(const Solution& solution, const std::filesystem::path& path) {
+  require_wheelset(solution);
+  TriangleMesh all;
+  all.scalar_name = "pressure";
+  const auto add = [&](const TriangleMesh& mesh) {
+    const int first = static_cast<int>(all.vertices.size());
+    all.vertices.insert(all.vertices.end(), mesh.vertices.begin(), mesh.vertices.end());
+    for (const auto& t : mesh.triangles) all.triangles.push_back({t[0] + first, t[1] + first, t[2] + first});
+    if (mesh.scalar.empty())
+      all.scalar.insert(all.scalar.end(), mesh.vertices.size(), 0.0);
+    else
+      all.scalar.insert(all.scalar.end(), mesh.scalar.begin(), mesh.scalar.end());
+  };
+  const MeshOptions options{.chord_error_mm = 0.05};
+  for (const Side side : {Side::left, Side::right}) {
+    add(placed_rail(solution, side, options));
+    add(placed_wheel(solution, side, options));
+  }
+  add(placed_axle(solution, options));
+  for (const Contact& contact : solution.contacts)
+    if (contact.patch) add(patch_sheet(contact, 0.05));
+  write_mesh(path, all);
+}
+
+}  // namespace runband
