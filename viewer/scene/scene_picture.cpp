@@ -119,6 +119,7 @@ void aim(vtkRenderer* renderer, const Contact& contact) {
   camera->SetFocalPoint(centre.x(), centre.y(), centre.z());
   camera->SetPosition(eye.x(), eye.y(), eye.z());
   camera->SetViewUp(0, 0, 1);
+  camera->SetWindowCenter(-0.3, -0.08);  // room at the left for the detail view, below for the title block
   camera->SetViewAngle(24);
 }
 
@@ -200,16 +201,20 @@ ScenePicture draw_scene(const Solution& solution, const SceneOptions& options) {
   renderer->SetGradientBackground(false);
   window->AddRenderer(renderer);
 
+  // On a dark ground the bodies need more light than their drawn fills have.
+  const bool dark = options.theme == plot::ThemeName::dark;
+  const plot::Colour wheel_fill = dark ? plot::mix(theme.wheel_fill, theme.steel, 0.55) : theme.wheel_fill;
+  const plot::Colour rail_fill = dark ? plot::mix(theme.rail_fill, theme.steel, 0.55) : theme.rail_fill;
   const double line_px = std::max(1.0, 0.25 * options.pixels_per_mm * kFiner);
   const MeshOptions fine{.chord_error_mm = 0.03, .max_edge_mm = 60};
   const MeshOptions round{.chord_error_mm = 0.06};
   for (const Side side : {Side::left, Side::right}) {
-    add_body(renderer, placed_rail(solution, side, fine), theme.rail_fill, theme.ink, 1.0, line_px);
+    add_body(renderer, placed_rail(solution, side, fine), rail_fill, theme.ink, 1.0, line_px);
     // The wheel over the looked-at patch is glass, so that the patch is seen.
     const bool over = side == looked_at.zone.side;
-    add_body(renderer, placed_wheel(solution, side, round), theme.wheel_fill, theme.ink, over ? 0.34 : 1.0, line_px);
+    add_body(renderer, placed_wheel(solution, side, round), wheel_fill, theme.ink, over ? 0.34 : 1.0, line_px);
   }
-  add_body(renderer, placed_axle(solution, round), theme.wheel_fill, theme.ink, 1.0, line_px);
+  add_body(renderer, placed_axle(solution, round), wheel_fill, theme.ink, 1.0, line_px);
   for (const Contact& c : solution.contacts)
     if (c.patch) add_patch(renderer, c, highest);
 
