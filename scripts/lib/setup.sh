@@ -34,6 +34,7 @@ need_packages() {
       "${as_root[@]}" env DEBIAN_FRONTEND=noninteractive apt-get -o Acquire::Retries=3 -o Dpkg::Use-Pty=0 \
         install -y --no-install-recommends $missing; } </dev/null 2>&1 | tee "$log" |
       awk '/^Need to get|^After this operation/ {print "   " $0; fflush()}
+           /^Unpacking/ && ++u % 100 == 0 {print "   " u " packages unpacked"; fflush()}
            /^Setting up/ && ++n % 100 == 0 {print "   " n " packages set up"; fflush()}'; then
       rm -f "$BUILD"/*/build.ninja  # what was not found before is looked for again
       return 0
