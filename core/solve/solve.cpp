@@ -93,6 +93,16 @@ void solve_patches(Solution& solution, const Progress& progress) {
   }
 }
 
+/// Parameters of an analysis that is not there would otherwise be taken in silence.
+void refuse_missing_analyses(const Case& c) {
+  if (c.analyses.empty()) return;
+  throw InputError(
+      ErrorCode::unknown_name,
+      c.origin + ": analyses." + c.analyses.begin()->first + ": no analysis of this name is installed.",
+      "remove its parameters; for a key of the case itself write --set section.key=value with a section of "
+      "the case file.");
+}
+
 }  // namespace
 
 std::shared_ptr<const Locator> prepare(const Case& c) {
@@ -109,6 +119,7 @@ Solution solve(const Case& c, const Progress& progress) {
 
 Solution solve(const Case& c, std::shared_ptr<const Locator> locator, const Progress& progress) {
   const auto start = Clock::now();
+  refuse_missing_analyses(c);
   Solution solution;
   solution.asked = c;
   solution.locator = std::move(locator);
@@ -132,6 +143,11 @@ Solution solve(const Case& c, std::shared_ptr<const Locator> locator, const Prog
     if (!contact.patch) continue;
     auto& cautions = contact.zone.cautions;
     cautions.insert(cautions.end(), contact.patch->cautions.begin(), contact.patch->cautions.end());
+  }
+  const CreepageRequest& creepage = c.creepage;
+  if (creepage.longitudinal || creepage.lateral || creepage.spin_per_mm) {
+    solution.cautions.push_back(
+        {"creepage_unused", Severity::note, "The case states a creepage, but no analysis that uses it is installed."});
   }
   solution.cautions.push_back(
       {"no_acceptance", Severity::note,

@@ -67,6 +67,10 @@ TEST(Solve, ABenchCaseIsHertzsEllipse) {
   EXPECT_NEAR(s.contacts[0].zone.ellipse->semi_axis_across_mm, 5.02216771891, 1e-9);
 }
 
+TEST(Solve, AnAnalysisThatIsNotThereIsRefused) {
+  EXPECT_THROW(solve(demo("bench.toml", {"wear.law=energy"})), InputError);
+}
+
 TEST(Solve, StopsWhenAsked) {
   std::stop_source stop;
   stop.request_stop();

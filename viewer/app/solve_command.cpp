@@ -6,6 +6,7 @@
 #include "core/solve/solution.h"
 #include "viewer/app/commands.h"
 #include "viewer/app/table.h"
+#include "viewer/plates/plate.h"
 
 namespace runband {
 
@@ -151,12 +152,34 @@ void print_solution(const Solution& solution, std::ostream& out) {
   out << "\n";
 }
 
+/// The figures that the case asks for ([[plate]]), beside the numbers.
+void draw_wanted(const Solution& solution, const std::filesystem::path& folder, const Progress& progress) {
+  int number = 0;
+  for (const PlateRequest& wanted : solution.asked.plates) {
+    Plate plate;
+    plate.kind = wanted.plate;
+    plate.dpi = wanted.dpi;
+    plate.theme = *plot::theme_named(wanted.theme);
+    std::tie(plate.width_mm, plate.height_mm) = parse_size(wanted.size);
+    ++number;
+    const std::string name = wanted.file.empty() ? wanted.plate + "_" + std::to_string(number) + ".png" : wanted.file;
+    progress.at(1.0, "drawing");
+    if (wanted.plate == "traverse")
+      draw_plate(plate, traverse(solution.asked, -6.0, 6.0, 0.05, progress), folder / name);
+    else
+      draw_plate(plate, solution, folder / name);
+  }
+}
+
 }  // namespace
 
 int solve_command(const SolveOptions& options, const Progress& progress) {
   const Case c = load_case(options.input.case_file, options.input.settings);
   const Solution solution = solve(c, progress);
-  if (!options.output.out.empty()) write_solution(solution, options.output.out);
+  if (!options.output.out.empty()) {
+    write_solution(solution, options.output.out);
+    draw_wanted(solution, options.output.out, progress);
+  }
   if (options.output.json) {
     std::cout << solution_json(solution);
   } else if (options.output.csv) {
@@ -165,7 +188,8 @@ int solve_command(const SolveOptions& options, const Progress& progress) {
     print_solution(solution, std::cout);
     if (!options.output.out.empty())
       std::cout << "Written to " << options.output.out
-                << ": solution.json, contacts.csv, case.toml, patches (.vti) and surfaces (.vtp).\n";
+                << ": solution.json, contacts.csv, case.toml, patches (.vti), surfaces (.vtp) and the plates that the "
+                   "case asks for.\n";
   }
   return 0;
 }
