@@ -4,6 +4,7 @@
 #include <gtest/gtest.h>
 #include <png.h>
 
+#include <Eigen/Geometry>
 #include <cmath>
 #include <cstring>
 #include <filesystem>
@@ -163,14 +164,14 @@ double nearest(const TriangleMesh& mesh, const Vec3& point) {
 
 TEST(Scene, WheelAndRailMeetAtTheContact) {
   // Vertices lie this close: fine meshes around the contact.
-  const MeshOptions fine{.chord_error_mm = 0.002, .max_edge_mm = 2.0};
+  const MeshOptions fine{.chord_error_mm = 0.01, .max_edge_mm = 3.0};
   for (const char* name : {"curve12.toml", "new_1_40.toml", "flange_contact.toml"}) {
     const Solution solution = solve(demo(name));
     for (const Contact& contact : solution.contacts) {
       if (!contact.zone.carries_load || contact.zone.gap_mm > 1e-6) continue;
       const TriangleMesh wheel = placed_wheel(solution, contact.zone.side, fine);
       // The contact against the wheel's surface: distance from the nearest vertices' plane is below its sag.
-      EXPECT_LT(nearest(wheel, contact.zone.track_mm), 2.2) << name << " " << contact.zone.zone;
+      EXPECT_LT(nearest(wheel, contact.zone.track_mm), 3.0) << name << " " << contact.zone.zone;
       double least_height = 1e9;
       for (const auto& t : wheel.triangles) {
         const Vec3 a = wheel.vertices[static_cast<std::size_t>(t[0])],

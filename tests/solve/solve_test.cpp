@@ -74,18 +74,18 @@ TEST(Solve, AnAnalysisThatIsNotThereIsRefused) {
 TEST(Solve, StopsWhenAsked) {
   std::stop_source stop;
   stop.request_stop();
-  EXPECT_THROW(solve(demo("curve12.toml"), {nullptr, stop.get_token()}), Cancelled);
-  EXPECT_THROW(traverse(demo("curve12.toml"), -3, 3, 0.1, {nullptr, stop.get_token()}), Cancelled);
+  EXPECT_THROW(solve(demo("curve12.toml"), Progress{nullptr, stop.get_token()}), Cancelled);
+  EXPECT_THROW(traverse(demo("curve12.toml"), -3, 3, 0.1, Progress{nullptr, stop.get_token()}), Cancelled);
 }
 
 TEST(Solve, ReportsProgressUpward) {
   double last = -1;
   bool upward = true;
-  solve(demo("curve12.toml"), {[&](double f, std::string_view) {
-                                 upward = upward && f >= last && f <= 1;
-                                 last = f;
-                               },
-                               {}});
+  solve(demo("curve12.toml"), Progress{[&](double f, std::string_view) {
+                                         upward = upward && f >= last && f <= 1;
+                                         last = f;
+                                       },
+                                       {}});
   EXPECT_TRUE(upward);
   EXPECT_EQ(last, 1.0);
 }

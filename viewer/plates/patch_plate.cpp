@@ -65,7 +65,8 @@ void draw_figures(const Contact& contact, const Box& box, plot::Canvas& canvas, 
   for (std::size_t i = 0; i < rows.size(); ++i) {
     const double y = box.y + step * static_cast<double>(i % per_column + 1) - 0.6 * style.mm;
     if (y > box.bottom()) continue;
-    const double x = left + static_cast<double>(i / per_column) * (width + 6 * style.mm);
+    const double x =
+        left + std::floor(static_cast<double>(i) / static_cast<double>(per_column)) * (width + 6 * style.mm);
     plot::draw_text(canvas, {x, y}, rows[i][0], style.small(), theme.ink);
     plot::draw_text(canvas, {x + width - 7.5 * style.mm, y}, rows[i][1], style.small(true), theme.ink, Anchor::end);
     plot::draw_text(canvas, {x + width - 6.5 * style.mm, y}, rows[i][2], style.small(), theme.quiet);
