@@ -45,13 +45,16 @@ need_packages() {
   die "apt could not install the packages; the whole story is in build/apt.log"
 }
 
-# configure PRESET: once; later ninja configures again by itself when a CMake file changes.
+# configure PRESET [without-tests]: cmake, unless that was done.
 configure() {
-  local preset=$1 log=$BUILD/$1.configure.log
+  local preset=$1 log=$BUILD/$1.configure.log cache=$BUILD/$1/CMakeCache.txt
+  local tests=ON
+  [ "${2-}" = without-tests ] && tests=OFF
   mkdir -p "$BUILD"
-  [ -f "$BUILD/$preset/build.ninja" ] && return 0
+  # A build without tests is given them when they are wanted; one with tests keeps them.
+  if [ -f "$BUILD/$preset/build.ninja" ] && { [ "$tests" = OFF ] || ! grep -q '^RUNBAND_TESTS:BOOL=OFF' "$cache"; }; then return 0; fi
   step "Configuring $preset"
-  cmake --preset "$preset" >"$log" 2>&1 </dev/null || { cat "$log" >&2; die "configuring failed"; }
+  cmake --preset "$preset" -DRUNBAND_TESTS=$tests >"$log" 2>&1 </dev/null || { cat "$log" >&2; die "configuring failed"; }
 }
 
 # build PRESET [TARGET...]: ninja with one progress line every few seconds. A file's warnings are kept in
