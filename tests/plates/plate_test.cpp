@@ -135,7 +135,7 @@ TEST(Plates, TheTraverseIsDrawnWithItsTitles) {
   const Traverse t = traverse(demo("new_1_40.toml"), -6, 6, 0.25);
   draw_plate(plate_of("traverse"), t, out("traverse.svg"));
   const std::string svg = read_file(out("traverse.svg"));
-  for (const char* word : {"Rolling radius difference, left minus right", "Contact angle",
+  for (const char* word : {"Rolling radius difference, mm", "left minus right", "Contact angle, °",
                            "lateral displacement of the wheelset, mm", "left", "right"})
     EXPECT_NE(svg.find(word), std::string::npos) << word;
 }

@@ -11,6 +11,8 @@ using plot::Box;
 
 namespace {
 
+constexpr const char* kRollsThisWay = "rolls this way";
+
 plot::Plot patch_plot(const Contact& contact, double highest_MPa) {
   const Patch& patch = *contact.patch;
   plot::Plot p;
@@ -19,7 +21,7 @@ plot::Plot patch_plot(const Contact& contact, double highest_MPa) {
   p.y.title = "across, s";
   p.y.unit = "mm";
   p.equal_aspect = true;
-  p.maps.push_back(pressure_map(patch, highest_MPa));
+  p.maps.push_back(pressure_map(contact, highest_MPa));
   if (contact.zone.ellipse) {
     plot::Line outline = ellipse_line(*contact.zone.ellipse);
     if (patch.method == PatchMethod::half_space) outline.dash = plot::Dash::dashed;
@@ -89,8 +91,6 @@ void draw_patch_plate(const Solution& solution, const Plate& plate, plot::Canvas
     half_s = std::max(half_s, s);
   }
   half_x = std::max(half_x * 1.08, 7.5);
-  // Below the patch there is room for the scale disc, above it for the arrow.
-  const plot::Range across{-half_s - 11.5, half_s + 3.0};
 
   const double bar_height = 9.5 * style.mm;
   const bool wide = body.width >= body.height * 0.9;
@@ -102,14 +102,27 @@ void draw_patch_plate(const Solution& solution, const Plate& plate, plot::Canvas
   const double cell_height = wide ? body.height : (body.height - gap * (count - 1)) / count;
   const double head = 5 * style.mm;
   const int rows = cell_width > 85 * style.mm ? 3 : 6;
-  const double figures = cell_height > 75 * style.mm ? rows * 3.6 * style.mm + 1.5 * style.mm : 0;
+  const double figures = cell_height > (rows == 3 ? 55 : 65) * style.mm ? rows * 3.6 * style.mm + 1.5 * style.mm : 0;
+
+  // Above the patch there is room for the arrow; the scale disc stands below it or to its right, whichever leaves the
+  // patch larger.
+  constexpr double kDiscRoom = 11.5, kArrowRoom = 3.0;  // mm of the patch's own scale
+  const double room_x = cell_width * 0.9, room_s = (cell_height - head - figures) * 0.72;
+  const double below = std::min(room_x / (2 * half_x), room_s / (2 * half_s + kDiscRoom + kArrowRoom));
+  const double beside =
+      std::min(room_x / (2 * half_x + kDiscRoom), room_s / (std::max(2 * half_s, kDiscRoom) + 2 * kArrowRoom));
+  const bool disc_below = below >= beside;
+  const plot::Range along{-half_x, half_x + (disc_below ? 0.0 : kDiscRoom)};
+  const double half_room = std::max(half_s, kDiscRoom / 2) + kArrowRoom;
+  const plot::Range across =
+      disc_below ? plot::Range{-half_s - kDiscRoom, half_s + kArrowRoom} : plot::Range{-half_room, half_room};
 
   std::vector<plot::Plot> plots;
   std::vector<Box> boxes;
   double scale = 1e9;
   for (std::size_t k = 0; k < chosen.size(); ++k) {
     plots.push_back(patch_plot(solution.contacts[chosen[k]], highest));
-    plots.back().x.range = plot::Range{-half_x, half_x};
+    plots.back().x.range = along;
     plots.back().y.range = across;
     plots.back().disc = plot::ScaleDisc{};
     const auto step = static_cast<double>(k);
@@ -118,24 +131,27 @@ void draw_patch_plate(const Solution& solution, const Plate& plate, plot::Canvas
     boxes.push_back({cell.x, cell.y + head, cell.width, cell.height - head - figures});
     const plot::Margins m =
         plot::margins_of(plots.back(), canvas, style, boxes.back().width * 0.9, boxes.back().height * 0.8);
-    scale = std::min({scale, (boxes.back().width - m.left - m.right) / (2 * half_x),
+    scale = std::min({scale, (boxes.back().width - m.left - m.right) / along.span(),
                       (boxes.back().height - m.top - m.bottom) / across.span()});
   }
   for (std::size_t k = 0; k < chosen.size(); ++k) {
     const Contact& contact = solution.contacts[chosen[k]];
     plots[k].scale = scale;
-    std::string name = contact_name(contact);
-    std::transform(name.begin(), name.end(), name.begin(),
-                   [](unsigned char c) { return static_cast<char>(std::toupper(c)); });
-    plot::draw_text(canvas, {boxes[k].x, boxes[k].y - head + 3 * style.mm}, name, style.label(), theme.quiet);
+    plot::draw_text(canvas, {boxes[k].x, boxes[k].y - head + 3 * style.mm}, contact_label(contact), style.label(),
+                    theme.quiet);
     const plot::Frame frame = plot::draw_plot(plots[k], boxes[k], canvas, theme, style);
     // Rolling direction: the leading edge is at the right.
     const double y = frame.data.y + 4.2 * style.mm;
     const double x = frame.data.right() - 3 * style.mm;
     plot::draw_arrow(canvas, {x - 9 * style.mm, y}, {x, y}, {theme.accent, style.bold, plot::Dash::solid},
                      1.6 * style.mm);
-    plot::draw_text(canvas, {x - 10.5 * style.mm, y + 0.9 * style.mm}, "rolls this way", style.small(), theme.accent,
-                    Anchor::end);
+    const plot::Point words{x - 10.5 * style.mm, y + 0.9 * style.mm};
+    const double disc = 10 * scale + 2 * style.mm;
+    // A small disc has its name at its left.
+    const double name = canvas.measure(plots[k].disc->label, style.small()).width + 2 * style.mm;
+    const Box disc_box{frame.data.right() - disc - name, frame.data.bottom() - disc, disc + name, disc};
+    if (!plot::text_box(canvas, words, kRollsThisWay, style.small(), Anchor::end).overlaps(disc_box))
+      plot::draw_text(canvas, words, kRollsThisWay, style.small(), theme.accent, Anchor::end);
     if (figures > 0)
       draw_figures(contact, {boxes[k].x, boxes[k].bottom() + 1.5 * style.mm, boxes[k].width, figures - 1.5 * style.mm},
                    canvas, theme, style);

@@ -28,7 +28,7 @@ void draw_detail(const Contact& contact, Point centre, double radius, double sca
   const double reach = radius / scale;
   p.x.range = plot::Range{-reach, reach};
   p.y.range = plot::Range{-reach, reach};
-  p.maps.push_back(pressure_map(*contact.patch, highest));
+  p.maps.push_back(pressure_map(contact, highest));
   if (contact.zone.ellipse) {
     p.lines.push_back(ellipse_line(*contact.zone.ellipse));
     if (contact.patch->method == PatchMethod::half_space) p.lines.back().dash = plot::Dash::dashed;
@@ -76,7 +76,7 @@ void draw_scene_plate(const Solution& solution, const Plate& plate, const std::f
       canvas.polygon(plot::corners({page.x - 1, page.bottom() - foot, page.width + 2, foot + 1}), theme.paper);
     const Box body = draw_title_block(title_block(solution.asked, plate, state_text(solution)), canvas, theme, style);
     const double radius = std::min(body.width * 0.19, body.height * 0.33);
-    const Point centre{body.x + radius + 2 * style.mm, body.y + radius + 6 * style.mm};
+    const Point centre{body.x + radius + 2 * style.mm, body.y + radius + 2 * style.mm};
     const Point at{scene.contact_px.x / px_per_mm, scene.contact_px.y / px_per_mm};
     const double half = contact.zone.ellipse ? std::max(contact.zone.ellipse->semi_axis_rolling_mm,
                                                         contact.zone.ellipse->semi_axis_across_mm)
@@ -89,13 +89,16 @@ void draw_scene_plate(const Solution& solution, const Plate& plate, const std::f
                     {centre.x - dx / distance * radius, centre.y - dy / distance * radius},
                     {theme.ink, style.fine, plot::Dash::solid});
     draw_detail(contact, centre, radius, scale, highest, canvas, theme, style);
-    std::string name = contact_name(contact);
-    std::transform(name.begin(), name.end(), name.begin(),
-                   [](unsigned char c) { return static_cast<char>(std::toupper(c)); });
-    const Point letter{centre.x - radius, body.y + 3.2 * style.mm};
-    plot::draw_text(canvas, letter, "L", style.normal(true), theme.ink);
-    plot::draw_text(canvas, {letter.x + canvas.measure("L", style.normal(true)).width + 1.5 * style.mm, letter.y},
-                    plot::scale_text(scale) + "   " + name, style.small(), theme.quiet);
+    const std::string mark_letter = detail_letter(contact);
+    // Inside the ring, where nothing of the scene runs through the words.
+    const std::string about = plot::scale_text(scale) + "   " + contact_label(contact);
+    const double words = canvas.measure(mark_letter, style.normal(true)).width + 1.5 * style.mm +
+                         canvas.measure(about, style.small()).width;
+    const Point letter{centre.x - words / 2, centre.y - 0.62 * radius};
+    plot::draw_text(canvas, letter, mark_letter, style.normal(true), theme.ink);
+    plot::draw_text(canvas,
+                    {letter.x + canvas.measure(mark_letter, style.normal(true)).width + 1.5 * style.mm, letter.y},
+                    about, style.small(), theme.quiet);
     const Box bar{body.x, page.bottom() - foot - 12 * style.mm, std::min(70 * style.mm, body.width * 0.4),
                   9.5 * style.mm};
     plot::draw_colour_bar(bar, plot::ColourMap::ember, {0, highest}, "contact pressure", "MPa", canvas, theme, style);

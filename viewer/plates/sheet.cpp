@@ -78,14 +78,14 @@ Box draw_title_block(const TitleBlock& block, plot::Canvas& canvas, const plot::
   const double first = top + 3.7 * style.mm;
   const double second = top + 7.3 * style.mm;
   const double right = page.right() - margin;
-  double right_width = 0;
+  double right_width[2] = {};
   for (std::size_t i = 0; i < block.right.size() && i < 2; ++i) {
     plot::draw_text(canvas, {right, i == 0 ? first : second}, block.right[i], style.small(), theme.quiet, Anchor::end);
-    right_width = std::max(right_width, canvas.measure(block.right[i], style.small()).width);
+    right_width[i] = canvas.measure(block.right[i], style.small()).width;
   }
-  const double room = page.width - 2 * margin - right_width - 3 * style.mm;
   // Words that do not fit lose their last clauses rather than run into the next column.
-  const auto fitted = [&](std::string words, const plot::Font& font) {
+  const auto fitted = [&](std::string words, const plot::Font& font, double beside) {
+    const double room = page.width - 2 * margin - beside - 3 * style.mm;
     while (canvas.measure(words, font).width > room) {
       const auto clause = words.rfind(';');
       if (clause == std::string::npos) {
@@ -99,11 +99,11 @@ Box draw_title_block(const TitleBlock& block, plot::Canvas& canvas, const plot::
     }
     return words;
   };
-  plot::draw_text(canvas, {page.x + margin, first}, fitted(block.title, style.normal(true)), style.normal(true),
-                  theme.ink);
+  plot::draw_text(canvas, {page.x + margin, first}, fitted(block.title, style.normal(true), right_width[0]),
+                  style.normal(true), theme.ink);
   if (!block.left.empty())
-    plot::draw_text(canvas, {page.x + margin, second}, fitted(block.left.front(), style.small()), style.small(),
-                    theme.quiet);
+    plot::draw_text(canvas, {page.x + margin, second}, fitted(block.left.front(), style.small(), right_width[1]),
+                    style.small(), theme.quiet);
   return {page.x + margin, page.y + margin, page.width - 2 * margin, top - page.y - 2 * margin};
 }
 
@@ -161,6 +161,28 @@ plot::HeatMap pressure_map(const Patch& patch, double highest_MPa) {
   map.range = {0, highest_MPa};
   map.empty_value = 0.0;
   return map;
+}
+
+plot::HeatMap pressure_map(const Contact& contact, double highest_MPa) {
+  plot::HeatMap map = pressure_map(*contact.patch, highest_MPa);
+  if (contact.patch->method == PatchMethod::hertz && contact.zone.ellipse) {
+    plot::Line edge = ellipse_line(*contact.zone.ellipse);
+    map.edge_x = std::move(edge.x);
+    map.edge_y = std::move(edge.y);
+  }
+  return map;
+}
+
+std::string detail_letter(const Contact& contact) {
+  if (contact.on_bench) return "B";
+  return contact.zone.side == Side::left ? "L" : "R";
+}
+
+std::string contact_label(const Contact& contact) {
+  std::string name = contact_name(contact);
+  std::transform(name.begin(), name.end(), name.begin(),
+                 [](unsigned char c) { return static_cast<char>(std::toupper(c)); });
+  return name;
 }
 
 plot::Line ellipse_line(const HertzEllipse& ellipse) {

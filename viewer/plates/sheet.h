@@ -42,6 +42,12 @@ void draw_scene_plate(const Solution&, const Plate&, const std::filesystem::path
 
 /// The pressure of a patch as a heat map in mm of the contact frame.
 plot::HeatMap pressure_map(const Patch&, double highest_MPa);
+/// The same of a contact: where Hertz's ellipse is the patch, its edge cuts the cells.
+plot::HeatMap pressure_map(const Contact&, double highest_MPa);
+/// Letter of a contact's detail view: L or R, B on the bench.
+std::string detail_letter(const Contact&);
+/// In capitals, for the label over a figure.
+std::string contact_label(const Contact&);
 /// The ellipse's outline in the contact frame.
 plot::Line ellipse_line(const HertzEllipse&);
 

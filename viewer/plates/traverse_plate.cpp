@@ -11,16 +11,17 @@ using plot::Box;
 
 namespace {
 
-/// y over the lateral displacement, broken where a contact of this side jumps.
+/// y over the lateral displacement, broken where a contact of this side (of either, if none is named) jumps.
 plot::Line broken_line(const Traverse& t, const std::vector<double>& y, const Side* side, plot::Paint paint,
                        const std::string& label) {
   plot::Line line;
   line.paint = paint;
   line.label = label;
   for (std::size_t i = 0; i < y.size(); ++i) {
-    if (i > 0 && side != nullptr) {
+    if (i > 0) {
       for (const ContactJump& jump : t.jumps) {
-        if (jump.side == *side && jump.lateral_mm > t.lateral_mm[i - 1] && jump.lateral_mm <= t.lateral_mm[i]) {
+        if ((side == nullptr || jump.side == *side) && jump.lateral_mm > t.lateral_mm[i - 1] &&
+            jump.lateral_mm <= t.lateral_mm[i]) {
           line.x.push_back(jump.lateral_mm);
           line.y.push_back(std::numeric_limits<double>::quiet_NaN());
           break;
@@ -41,34 +42,38 @@ void draw_traverse_plate(const Traverse& t, const Plate& plate, plot::Canvas& ca
   std::string state = "lateral displacement at ";
   state += t.asked.state.reference == LateralReference::axle ? "the axle centre" : "rail level";
   state += ", yaw " + plot::number(t.asked.state.yaw_mrad, 1) + " mrad";
-  if (!t.jumps.empty()) state += "; red posts: contact jumps";
+  const bool one_place = t.asked.state.lateral_mm.size() == 1;
+  if (!t.jumps.empty()) state += "; red posts: jumps";
+  if (one_place) state += "; line: this case, " + plot::number(t.asked.state.lateral_mm.front(), 2) + " mm";
   const Box body = draw_title_block(title_block(t.asked, plate, state), canvas, theme, style);
 
   const Side left = Side::left, right = Side::right;
   const plot::Paint blue{plot::Ink::accent, 1, {}}, ink{plot::Ink::ink, 1, {}};
   std::vector<plot::Plot> plots(4);
-  const auto set_up = [&](plot::Plot& p, const std::string& title, const std::string& unit) {
+  const auto set_up = [&](plot::Plot& p, const std::string& title, const std::string& caption) {
     p.title = title;
-    p.caption = unit;
+    p.caption = caption;
     p.x.numbers = false;
     p.x.range = plot::Range{t.lateral_mm.front(), std::max(t.lateral_mm.back(), t.lateral_mm.front() + 1e-9)};
   };
-  set_up(plots[0], "Rolling radius difference, left minus right", "mm");
+  set_up(plots[0], "Rolling radius difference, mm", "left minus right");
   plots[0].lines.push_back(broken_line(t, t.rolling_radius_difference_mm, nullptr, blue, ""));
-  set_up(plots[1], "Contact angle", "°");
+  set_up(plots[1], "Contact angle, °", "");
   plots[1].lines.push_back(broken_line(t, t.left.contact_angle_deg, &left, blue, "left"));
   plots[1].lines.push_back(broken_line(t, t.right.contact_angle_deg, &right, ink, "right"));
-  set_up(plots[2], "Position on the wheel, from the running circle", "mm");
+  set_up(plots[2], "Position on the wheel, mm", "from the running circle");
   plots[2].lines.push_back(broken_line(t, t.left.wheel_y_mm, &left, blue, "left"));
   plots[2].lines.push_back(broken_line(t, t.right.wheel_y_mm, &right, ink, "right"));
-  set_up(plots[3], "Position on the rail, from the head's centre", "mm");
+  set_up(plots[3], "Position on the rail, mm", "from the head's centre");
   plots[3].lines.push_back(broken_line(t, t.left.rail_y_mm, &left, blue, "left"));
   plots[3].lines.push_back(broken_line(t, t.right.rail_y_mm, &right, ink, "right"));
   plots[3].x.numbers = true;
   plots[3].x.title = "lateral displacement of the wheelset";
   plots[3].x.unit = "mm";
-  for (plot::Plot& p : plots)
+  for (plot::Plot& p : plots) {
     for (const ContactJump& jump : t.jumps) p.posts.push_back({jump.lateral_mm, "", {plot::Ink::warning, 1, {}}});
+    if (one_place) p.pointer = plot::Pointer{t.asked.state.lateral_mm.front(), ""};
+  }
 
   // One column where the page is tall, two by two where it is wide.
   const bool two_columns = body.width > 1.25 * body.height && body.width > 120 * style.mm;

@@ -10,7 +10,8 @@ namespace {
 // Corners of a drawn circle: the sagitta stays below 0.02 mm up to 30 mm radius.
 constexpr int kCircleCorners = 144;
 constexpr double kDegree = std::numbers::pi / 180.0;
-constexpr double kArrowSlimness = 0.18;  // half width over length of an arrow head
+constexpr double kArrowSlimness = 0.18;  // half width over length of an arrow head, at least ...
+constexpr double kArrowShoulder = 1.5;   // ... so many widths of its line
 }  // namespace
 
 std::vector<Point> corners(const Box& box) {
@@ -55,7 +56,7 @@ void draw_arrow(Canvas& canvas, Point from, Point to, const Stroke& stroke, doub
   const Point u{(to.x - from.x) / length, (to.y - from.y) / length};
   const Point base{to.x - u.x * head, to.y - u.y * head};
   if (length > head) draw_line(canvas, from, base, stroke);
-  const double half = head * kArrowSlimness;
+  const double half = std::max(head * kArrowSlimness, stroke.width * kArrowShoulder);
   const Point tip[] = {to, {base.x - u.y * half, base.y + u.x * half}, {base.x + u.y * half, base.y - u.x * half}};
   canvas.polygon(tip, stroke.colour);
 }
@@ -87,6 +88,25 @@ void draw_hatch(Canvas& canvas, std::span<const Point> outline, double angle_deg
       draw_line(canvas, at(crossings[i]), at(crossings[i + 1]), stroke);
     }
   }
+}
+
+// Sutherland and Hodgman (1974): one edge of the box after the other.
+std::vector<Point> cut_to(std::vector<Point> outline, const Box& box) {
+  const auto keep = [&](const auto& depth) {
+    std::vector<Point> kept;
+    for (std::size_t i = 0; i < outline.size(); ++i) {
+      const Point p = outline[i], q = outline[(i + 1) % outline.size()];
+      const double a = depth(p), b = depth(q);
+      if (a >= 0) kept.push_back(p);
+      if ((a < 0) != (b < 0)) kept.push_back({std::lerp(p.x, q.x, a / (a - b)), std::lerp(p.y, q.y, a / (a - b))});
+    }
+    outline = std::move(kept);
+  };
+  keep([&](Point p) { return p.x - box.x; });
+  keep([&](Point p) { return box.right() - p.x; });
+  keep([&](Point p) { return p.y - box.y; });
+  keep([&](Point p) { return box.bottom() - p.y; });
+  return outline;
 }
 
 Box text_box(const Canvas& canvas, Point at, std::string_view words, const Font& font, Anchor anchor) {

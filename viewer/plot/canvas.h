@@ -90,6 +90,8 @@ void draw_text(Canvas& canvas, Point at, std::string_view words, const Font& fon
 void draw_arrow(Canvas& canvas, Point from, Point to, const Stroke& stroke, double head);
 /// Parallel lines inside a closed outline (even-odd), `angle_deg` anticlockwise, `spacing` apart.
 void draw_hatch(Canvas& canvas, std::span<const Point> outline, double angle_deg, double spacing, const Stroke& stroke);
+/// The part of a closed outline inside the box; where the outline leaves it, the result runs along the box's edge.
+std::vector<Point> cut_to(std::vector<Point> outline, const Box& box);
 /// The box that words occupy, unturned.
 Box text_box(const Canvas& canvas, Point at, std::string_view words, const Font& font, Anchor anchor);
 

@@ -88,6 +88,9 @@ class Painter {
     return points;
   }
 
+  // Outlines far larger than the picture are cut a little outside of it, before they become ink.
+  Box around() const { return frame_.data.grown(2 * style_.mm); }
+
   void rules() {
     const Stroke rule = stroke({Ink::rule, 1, {}}, style_.fine * 0.8, theme_);
     for (const Tick& tick : ticks_of(plot_.y, frame_.y, frame_.data.height, kNumberEveryUp * style_.mm)) {
@@ -162,11 +165,14 @@ class Painter {
 
   void heat_map(const HeatMap& map) {
     const Point low = frame_.at(map.x0, map.y0), high = frame_.at(map.x0 + map.nx * map.dx, map.y0 + map.ny * map.dy);
+    const bool cut = map.edge_x.size() > 2;
+    if (cut) canvas_.push_clip(path(map.edge_x, map.edge_y));
     canvas_.image({low.x, high.y, high.x - low.x, low.y - high.y}, image_of(map), false);
+    if (cut) canvas_.pop_clip();
   }
 
   void filled(const Area& area) {
-    const std::vector<Point> outline = path(area.x, area.y);
+    const std::vector<Point> outline = cut_to(path(area.x, area.y), around());
     if (area.fill) canvas_.polygon(outline, colour_of(*area.fill, theme_));
     if (area.hatch_deg)
       draw_hatch(canvas_, outline, *area.hatch_deg, 1.8 * style_.mm, stroke(area.hatch, style_.fine * 0.6, theme_));
@@ -185,7 +191,8 @@ class Painter {
     for (std::size_t i = 0; i <= std::min(line.x.size(), line.y.size()); ++i) {
       const bool end = i == std::min(line.x.size(), line.y.size());
       if (end || !std::isfinite(line.x[i]) || !std::isfinite(line.y[i])) {
-        canvas_.line(piece, pen, line.closed && end);
+        const bool ring = line.closed && end;
+        canvas_.line(ring ? cut_to(std::move(piece), around()) : piece, pen, ring);
         piece.clear();
       } else {
         piece.push_back(frame_.at(line.x[i], line.y[i]));

@@ -84,7 +84,8 @@ struct HeatMap {
   Range range;
   /// Cells with exactly this value are left empty (no contact); not-a-number always is.
   std::optional<double> empty_value;
-  std::vector<Colour> inks;  ///< for labels: value k is drawn with inks[k]; empty for numbers
+  std::vector<Colour> inks;                ///< for labels: value k is drawn with inks[k]; empty for numbers
+  std::vector<double> edge_x{}, edge_y{};  ///< convex outline that cuts the cells, where it is known; else whole cells
 };
 
 /// Words at a data point, moved by (dx, dy) millimetres, y up; the first place that is free is taken if several.
