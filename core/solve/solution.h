@@ -6,22 +6,12 @@
 #include <string>
 #include <vector>
 
+#include "core/analysis/registry.h"
 #include "core/case/case.h"
 #include "core/locate/locate.h"
 #include "core/patch/patch.h"
 
 namespace runband {
-
-/// What one analysis returned for one contact or for the traverse.
-struct AnalysisResult {
-  std::string id;
-  std::vector<Field> fields;
-  std::vector<Curve> curves;
-  std::vector<Quantity> quantities;
-  std::vector<Mark> marks;
-  std::vector<Volume> volumes;
-  std::vector<Caution> cautions;
-};
 
 struct Contact {
   bool on_bench = false;  ///< side has no meaning then
@@ -40,14 +30,20 @@ struct Solution {
   double solve_ms = 0;
 };
 
+/// Which analyses run, and from where.
+struct AnalysisChoice {
+  const AnalysisRegistry* registry = &installed_analyses();
+  std::vector<std::string> with;  ///< ids, and with them what they need; empty: all
+};
+
 /// @throws Error of any kind. Never half-made.
-Solution solve(const Case&, const Progress& = {});
+Solution solve(const Case&, const Progress& = {}, const AnalysisChoice& = {});
 
 /// Profiles, pairing and tables of a case: what stays the same while the wheelset moves. Null for a bench case.
 std::shared_ptr<const Locator> prepare(const Case&);
 /// The same with the tables of an earlier prepare() of a case that differs at most in state, load, material, friction
 /// and patch.
-Solution solve(const Case&, std::shared_ptr<const Locator>, const Progress& = {});
+Solution solve(const Case&, std::shared_ptr<const Locator>, const Progress& = {}, const AnalysisChoice& = {});
 
 struct SideTraverse {
   std::vector<double> contact_angle_deg, rolling_radius_mm, wheel_y_mm, rail_y_mm;
@@ -61,8 +57,10 @@ struct Traverse {
   std::map<std::string, AnalysisResult> analyses;
   std::vector<Caution> cautions;
 };
-Traverse traverse(const Case&, double from_mm, double to_mm, double step_mm, const Progress& = {});
-Traverse traverse(const Case&, const std::vector<double>& positions_mm, const Progress& = {});
+Traverse traverse(const Case&, double from_mm, double to_mm, double step_mm, const Progress& = {},
+                  const AnalysisChoice& = {});
+Traverse traverse(const Case&, const std::vector<double>& positions_mm, const Progress& = {},
+                  const AnalysisChoice& = {});
 
 /// JSON and CSV as documented in README; writers of the VTK XML files of --out.
 std::string solution_json(const Solution&);

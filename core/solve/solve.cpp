@@ -2,8 +2,10 @@
 #include <chrono>
 
 #include "core/base/error.h"
+#include "core/base/text.h"
 #include "core/patch/half_space_patch.h"
 #include "core/solve/solution.h"
+#include "core/solve/wheelset_analyses.h"
 
 namespace runband {
 
@@ -93,17 +95,44 @@ void solve_patches(Solution& solution, const Progress& progress) {
   }
 }
 
-/// Parameters of an analysis that is not there would otherwise be taken in silence.
-void refuse_missing_analyses(const Case& c) {
-  if (c.analyses.empty()) return;
-  throw InputError(
-      ErrorCode::unknown_name,
-      c.origin + ": analyses." + c.analyses.begin()->first + ": no analysis of this name is installed.",
-      "remove its parameters; for a key of the case itself write --set section.key=value with a section of "
-      "the case file.");
+Motion motion_of(const Case& c) {
+  return {c.state.speed_m_s, c.state.yaw_mrad * 1e-3, c.track.curve_radius_m, c.track.cant_mm};
+}
+
+/// Every analysis of every loaded contact, then those of the wheelset as a whole.
+void run_analyses(Solution& solution, const AnalysisChoice& choice, const Progress& progress) {
+  const Case& c = solution.asked;
+  for (Contact& contact : solution.contacts) {
+    if (!contact.patch) continue;
+    progress.at(0.85, "analyses");
+    const PatchContext context{
+        contact.on_bench, contact.zone,  *contact.patch,         c.material, c.friction, motion_of(c),
+        c.creepage,       solution.pose, solution.locator.get(), {}};
+    contact.analyses = choice.registry->run(context, choice.with, c.analyses, progress);
+  }
+  if (solution.locator) solution.analyses = analyses_of_wheelset(c, *solution.locator, solution.pose, choice, progress);
 }
 
 }  // namespace
+
+std::map<std::string, AnalysisResult> analyses_of_wheelset(const Case& c, const Locator& locator,
+                                                           const WheelsetPose& pose, const AnalysisChoice& choice,
+                                                           const Progress& progress) {
+  const WheelsetContext context{locator, c.state.reference, pose, motion_of(c), c.load, {}};
+  return choice.registry->run(context, choice.with, c.analyses, progress);
+}
+
+void refuse_missing_analyses(const Case& c, const AnalysisRegistry& registry) {
+  std::vector<std::string> names;
+  for (const Description& d : registry.descriptions()) names.push_back(d.id);
+  for (const auto& [id, parameters] : c.analyses) {
+    if (registry.find(id) != nullptr) continue;
+    const std::string near = nearest_name(id, names);
+    throw InputError(ErrorCode::unknown_name,
+                     c.origin + ": analyses." + id + ": no analysis of this name is installed.",
+                     near.empty() ? "`runband analyses` lists what is there." : "did you mean " + near + "?");
+  }
+}
 
 std::shared_ptr<const Locator> prepare(const Case& c) {
   if (c.bench) return nullptr;
@@ -112,14 +141,15 @@ std::shared_ptr<const Locator> prepare(const Case& c) {
   return std::make_shared<const Locator>(std::move(pairing));
 }
 
-Solution solve(const Case& c, const Progress& progress) {
+Solution solve(const Case& c, const Progress& progress, const AnalysisChoice& choice) {
   if (!c.bench) progress.at(0.0, "reading profiles");
-  return solve(c, prepare(c), progress);
+  return solve(c, prepare(c), progress, choice);
 }
 
-Solution solve(const Case& c, std::shared_ptr<const Locator> locator, const Progress& progress) {
+Solution solve(const Case& c, std::shared_ptr<const Locator> locator, const Progress& progress,
+               const AnalysisChoice& choice) {
   const auto start = Clock::now();
-  refuse_missing_analyses(c);
+  refuse_missing_analyses(c, *choice.registry);
   Solution solution;
   solution.asked = c;
   solution.locator = std::move(locator);
@@ -144,11 +174,9 @@ Solution solve(const Case& c, std::shared_ptr<const Locator> locator, const Prog
     auto& cautions = contact.zone.cautions;
     cautions.insert(cautions.end(), contact.patch->cautions.begin(), contact.patch->cautions.end());
   }
-  const CreepageRequest& creepage = c.creepage;
-  if (creepage.longitudinal || creepage.lateral || creepage.spin_per_mm) {
-    solution.cautions.push_back(
-        {"creepage_unused", Severity::note, "The case states a creepage, but no analysis that uses it is installed."});
-  }
+  run_analyses(solution, choice, progress);
+  for (const PluginProblem& problem : choice.registry->problems())
+    solution.cautions.push_back({"plugin_not_used", Severity::warning, problem.file.string() + ": " + problem.text});
   solution.cautions.push_back(
       {"no_acceptance", Severity::note,
        "Nothing here is a safety acceptance; the applicable standards and licensed practice decide."});

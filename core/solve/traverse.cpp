@@ -5,10 +5,12 @@
 #include "core/base/error.h"
 #include "core/base/text.h"
 #include "core/solve/solution.h"
+#include "core/solve/wheelset_analyses.h"
 
 namespace runband {
 
-Traverse traverse(const Case& c, double from_mm, double to_mm, double step_mm, const Progress& progress) {
+Traverse traverse(const Case& c, double from_mm, double to_mm, double step_mm, const Progress& progress,
+                  const AnalysisChoice& choice) {
   if (!std::isfinite(from_mm) || !std::isfinite(to_mm) || !std::isfinite(step_mm) || !(step_mm > 0) ||
       !(to_mm >= from_mm)) {
     throw InputError(ErrorCode::out_of_range,
@@ -23,14 +25,16 @@ Traverse traverse(const Case& c, double from_mm, double to_mm, double step_mm, c
                      "use a larger --step.");
   std::vector<double> positions;
   for (int i = 0; i <= static_cast<int>(count); ++i) positions.push_back(from_mm + i * step_mm);
-  return traverse(c, positions, progress);
+  return traverse(c, positions, progress, choice);
 }
 
-Traverse traverse(const Case& c, const std::vector<double>& positions, const Progress& progress) {
+Traverse traverse(const Case& c, const std::vector<double>& positions, const Progress& progress,
+                  const AnalysisChoice& choice) {
   if (c.bench)
     throw InputError(ErrorCode::conflicting_keys, "traverse: a bench case has no wheelset to move.",
                      "name a case with [wheel] and [rail].");
   if (positions.empty()) throw InputError(ErrorCode::out_of_range, "traverse: no positions.", "");
+  refuse_missing_analyses(c, *choice.registry);
   Traverse t;
   t.asked = c;
   progress.at(0.0, "reading profiles");
@@ -57,6 +61,8 @@ Traverse traverse(const Case& c, const std::vector<double>& positions, const Pro
   progress.at(0.85, "finding contact jumps");
   if (positions.back() > positions.front())
     t.jumps = t.locator->jumps(positions.front(), positions.back(), yaw_rad, c.state.reference);
+  const WheelsetPose middle{0.5 * (positions.front() + positions.back()), c.state.reference, yaw_rad, 0, 0};
+  t.analyses = analyses_of_wheelset(c, *t.locator, middle, choice, progress);
   t.cautions.push_back(
       {"lateral_reference", Severity::note,
        std::string("Lateral displacement is taken at ") +

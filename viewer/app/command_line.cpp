@@ -19,6 +19,13 @@ void add_case(CLI::App* verb, CaseOptions& input) {
       ->allow_extra_args(false);
 }
 
+void add_with(CLI::App* verb, CaseOptions& input) {
+  verb->add_option("--with", input.with, "only these analyses and what they need: --with creepage,slip_bands")
+      ->type_name("NAME,...")
+      ->delimiter(',')
+      ->allow_extra_args(false);
+}
+
 void add_output(CLI::App* verb, OutputOptions& output, const std::string& what) {
   auto* json = verb->add_flag("--json", output.json, "print JSON");
   verb->add_flag("--csv", output.csv, "print CSV")->excludes(json);
@@ -55,11 +62,13 @@ int run_command_line(int argc, char** argv, const Progress& progress) {
   SolveOptions solve;
   auto* solve_verb = app.add_subcommand("solve", "contacts, forces and patches of a case");
   add_case(solve_verb, solve.input);
+  add_with(solve_verb, solve.input);
   add_output(solve_verb, solve.output, "folder for everything: JSON, CSV, VTK XML");
 
   TraverseOptions traverse;
   auto* traverse_verb = app.add_subcommand("traverse", "curves over lateral displacement");
   add_case(traverse_verb, traverse.input);
+  add_with(traverse_verb, traverse.input);
   add_output(traverse_verb, traverse.output, "folder for traverse.json and traverse.csv");
   traverse_verb->add_option("--from", traverse.from_mm, "first lateral displacement, mm (default -6)");
   traverse_verb->add_option("--to", traverse.to_mm, "last lateral displacement, mm (default 6)");
@@ -99,6 +108,10 @@ int run_command_line(int argc, char** argv, const Progress& progress) {
   profile_verb->add_option("--plot", profile.plot, "draw it: png, svg or pdf")->type_name("FILE");
   add_output(profile_verb, profile.output, "folder for profile.json and the fitted points as profile.csv");
 
+  std::string analysis;
+  auto* analyses_verb = app.add_subcommand("analyses", "what is installed, and what one needs, gives and takes");
+  analyses_verb->add_option("NAME", analysis, "one of them");
+
   try {
     app.parse(argc, argv);
   } catch (const CLI::Success& success) {
@@ -109,6 +122,7 @@ int run_command_line(int argc, char** argv, const Progress& progress) {
   if (*solve_verb) return solve_command(solve, progress);
   if (*traverse_verb) return traverse_command(traverse, progress);
   if (*draw_verb) return draw_command(draw, progress);
+  if (*analyses_verb) return analyses_command(analysis);
   return profile_command(profile, progress);
 }
 

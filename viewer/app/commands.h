@@ -57,6 +57,9 @@ struct ProfileCommandOptions {
   std::string plot;
   OutputOptions output;
 };
+/// All installed analyses, or one in full.
+int analyses_command(const std::string& name);
+
 int profile_command(const ProfileCommandOptions&, const Progress&);
 
 }  // namespace runband

@@ -175,7 +175,7 @@ void draw_wanted(const Solution& solution, const std::filesystem::path& folder, 
 
 int solve_command(const SolveOptions& options, const Progress& progress) {
   const Case c = load_case(options.input.case_file, options.input.settings);
-  const Solution solution = solve(c, progress);
+  const Solution solution = solve(c, progress, {&installed_analyses(), options.input.with});
   if (!options.output.out.empty()) {
     write_solution(solution, options.output.out);
     draw_wanted(solution, options.output.out, progress);

@@ -3,6 +3,7 @@
 #include <iostream>
 
 #include "core/base/file.h"
+#include "core/base/text.h"
 #include "core/solve/solution.h"
 #include "viewer/app/commands.h"
 #include "viewer/app/table.h"
@@ -35,6 +36,12 @@ void print_traverse(const Traverse& t, std::ostream& out) {
         << " mm: from " << fixed_text(jump.wheel_y_from_mm, 2) << " to " << fixed_text(jump.wheel_y_to_mm, 2)
         << " mm.\n";
   }
+  for (const auto& [id, result] : t.analyses) {
+    for (const Quantity& q : result.quantities) {
+      out << q.title << ": " << number_text(q.value, 4) << (q.unit == "1" ? "" : " " + q.unit) << "\n";
+    }
+    for (const Caution& k : result.cautions) out << "Caution, " << id << ": " << k.text << "\n";
+  }
   for (const Caution& k : t.cautions) out << "Note: " << k.text << "\n";
 }
 
@@ -42,10 +49,11 @@ void print_traverse(const Traverse& t, std::ostream& out) {
 
 int traverse_command(const TraverseOptions& options, const Progress& progress) {
   const Case c = load_case(options.input.case_file, options.input.settings);
+  const AnalysisChoice choice{&installed_analyses(), options.input.with};
   const bool listed = c.state.lateral_mm.size() > 1 && !options.from_mm && !options.to_mm && !options.step_mm;
-  const Traverse t = listed ? traverse(c, c.state.lateral_mm, progress)
+  const Traverse t = listed ? traverse(c, c.state.lateral_mm, progress, choice)
                             : traverse(c, options.from_mm.value_or(-6.0), options.to_mm.value_or(6.0),
-                                       options.step_mm.value_or(0.1), progress);
+                                       options.step_mm.value_or(0.1), progress, choice);
   if (!options.output.out.empty()) {
     const std::filesystem::path folder = options.output.out;
     write_file(folder / "traverse.json", traverse_json(t));

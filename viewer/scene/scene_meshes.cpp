@@ -71,8 +71,14 @@ TriangleMesh patch_sheet(const Contact& contact, double lift_mm) {
         sheet.vertices.push_back(contact.zone.track_mm + contact.zone.frame * Vec3(x, s, lift_mm - bend * s * s));
         sheet.scalar.push_back(p);
       }
-      sheet.triangles.push_back({first, first + 1, first + 2});
-      sheet.triangles.push_back({first, first + 2, first + 3});
+      // Up on both sides: the contact frame on the right is left-handed.
+      if (contact.zone.frame.determinant() > 0) {
+        sheet.triangles.push_back({first, first + 1, first + 2});
+        sheet.triangles.push_back({first, first + 2, first + 3});
+      } else {
+        sheet.triangles.push_back({first, first + 2, first + 1});
+        sheet.triangles.push_back({first, first + 3, first + 2});
+      }
     }
   }
   return sheet;

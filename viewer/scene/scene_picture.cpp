@@ -186,6 +186,16 @@ ScenePicture draw_scene(const Solution& solution, const SceneOptions& options) {
   for (const Contact& c : solution.contacts)
     if (c.patch) highest = std::max(highest, c.patch->peak_pressure_MPa);
 
+  // Mesa's software drawing ends at 16384 dots a side (memory), and the scene is drawn at twice its size.
+  constexpr int kMost = 8192;
+  if (options.width_px > kMost || options.height_px > kMost) {
+    throw InputError(ErrorCode::out_of_range,
+                     "draw: a scene of " + std::to_string(options.width_px) + " by " +
+                         std::to_string(options.height_px) + " dots is too large; at most " + std::to_string(kMost) +
+                         " a side.",
+                     "choose a smaller --dpi or --size.");
+  }
+
   const HeadlessGl gl;
   vtkNew<vtkGenericOpenGLRenderWindow> window;
   window->SetOwnContext(0);
@@ -215,8 +225,16 @@ ScenePicture draw_scene(const Solution& solution, const SceneOptions& options) {
     add_body(renderer, placed_wheel(solution, side, round), wheel_fill, theme.ink, over ? 0.34 : 1.0, line_px);
   }
   add_body(renderer, placed_axle(solution, round), wheel_fill, theme.ink, 1.0, line_px);
-  for (const Contact& c : solution.contacts)
-    if (c.patch) add_patch(renderer, c, highest);
+  for (std::size_t k = 0; k < solution.contacts.size(); ++k)
+    if (solution.contacts[k].patch && k != options.contact) add_patch(renderer, solution.contacts[k], highest);
+  // The looked-at patch is drawn over the glass of the wheel, so that its colours are those of the colour bar.
+  vtkNew<vtkRenderer> over_glass;
+  over_glass->SetLayer(1);
+  over_glass->InteractiveOff();
+  over_glass->SetActiveCamera(renderer->GetActiveCamera());
+  window->SetNumberOfLayers(2);
+  window->AddRenderer(over_glass);
+  add_patch(over_glass, looked_at, highest);
 
   renderer->AutomaticLightCreationOff();
   vtkNew<vtkLight> light;

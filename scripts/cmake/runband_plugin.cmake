@@ -1,0 +1,15 @@
+# runband_add_plugin(<id> SOURCES <file>...): a loadable analysis, runband_<id>.so, in the build's plugin folder.
+# In the tree it links runband_core; out of it the installed target runband::sdk.
+function(runband_add_plugin id)
+  cmake_parse_arguments(PLUGIN "" "" "SOURCES" ${ARGN})
+  add_library(runband_${id} MODULE ${PLUGIN_SOURCES})
+  set_target_properties(runband_${id} PROPERTIES PREFIX "")
+  if(TARGET runband_core)
+    runband_compile(runband_${id})
+    target_link_libraries(runband_${id} PRIVATE runband_core)
+    set_target_properties(runband_${id} PROPERTIES LIBRARY_OUTPUT_DIRECTORY ${CMAKE_LIBRARY_OUTPUT_DIRECTORY}/runband)
+    install(TARGETS runband_${id} LIBRARY DESTINATION ${CMAKE_INSTALL_LIBDIR}/runband)
+  else()
+    target_link_libraries(runband_${id} PRIVATE runband::sdk)
+  endif()
+endfunction()
