@@ -62,8 +62,8 @@ class SlipBands final : public Analysis {
     const double limit = c.friction * c.zone.normal_force_N;
     r.quantities.push_back({"force_rolling", "Creep force in rolling", "N", along, method});
     r.quantities.push_back({"force_across", "Creep force across", "N", across, method});
-    r.quantities.push_back(
-        {"saturation", "Friction used", "1", limit > 0 ? std::hypot(along, across) / limit : 0.0, method});
+    r.quantities.push_back({"saturation", "Share of the friction limit used", "1",
+                            limit > 0 ? std::hypot(along, across) / limit : 0.0, method});
     r.quantities.push_back({"convolutions", "Convolutions", "1", convolutions, method});
     r.quantities.push_back({"solve_time", "Solution time", "ms",
                             std::chrono::duration<double, std::milli>(std::chrono::steady_clock::now() - start).count(),

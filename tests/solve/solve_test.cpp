@@ -50,8 +50,12 @@ TEST(Solve, TheSameCaseGivesTheSameAnswer) {
   Solution a = solve(demo("curve12.toml")), b = solve(demo("curve12.toml"));
   a.solve_ms = b.solve_ms = 0;
   for (Solution* s : {&a, &b})
-    for (Contact& c : s->contacts)
+    for (Contact& c : s->contacts) {
       if (c.patch) c.patch->solve_ms = 0;
+      for (auto& [id, result] : c.analyses)
+        for (Quantity& q : result.quantities)
+          if (q.unit == "ms") q.value = 0;  // time is not part of the answer
+    }
   EXPECT_EQ(solution_json(a), solution_json(b));
 }
 

@@ -62,7 +62,10 @@ void print_analyses(const Solution& solution, std::ostream& out) {
       }
     }
   }
+  std::string last;
   for (const auto& [id, quantity] : names) {
+    if (!last.empty() && id != last) table.rule();
+    last = id;
     std::vector<std::string> cells;
     for (const Contact& contact : solution.contacts) {
       std::string cell;
