@@ -72,7 +72,7 @@ TEST(Solve, ABenchCaseIsHertzsEllipse) {
 }
 
 TEST(Solve, AnAnalysisThatIsNotThereIsRefused) {
-  EXPECT_THROW(solve(demo("bench.toml", {"wear.law=energy"})), InputError);
+  EXPECT_THROW(solve(demo("bench.toml", {"weer.law=energy"})), InputError);
 }
 
 TEST(Solve, StopsWhenAsked) {
