@@ -33,6 +33,7 @@ enum class ErrorCode : int {
   file_unreadable = 201,
   file_unwritable = 202,
   file_wrong_kind = 203,
+  drawing_unavailable = 204,
   not_converged = 301,
   no_solution = 302,
   plugin_incompatible = 401,

@@ -61,6 +61,9 @@ Traverse traverse(const Case&, double from_mm, double to_mm, double step_mm, con
                   const AnalysisChoice& = {});
 Traverse traverse(const Case&, const std::vector<double>& positions_mm, const Progress& = {},
                   const AnalysisChoice& = {});
+/// The same with the tables of an earlier prepare(), as in solve().
+Traverse traverse(const Case&, std::shared_ptr<const Locator>, const std::vector<double>& positions_mm,
+                  const Progress& = {}, const AnalysisChoice& = {});
 
 /// JSON and CSV as documented in README; writers of the VTK XML files of --out.
 std::string solution_json(const Solution&);

@@ -30,6 +30,12 @@ Traverse traverse(const Case& c, double from_mm, double to_mm, double step_mm, c
 
 Traverse traverse(const Case& c, const std::vector<double>& positions, const Progress& progress,
                   const AnalysisChoice& choice) {
+  progress.at(0.0, "reading profiles");
+  return traverse(c, c.bench ? nullptr : prepare(c), positions, progress, choice);
+}
+
+Traverse traverse(const Case& c, std::shared_ptr<const Locator> locator, const std::vector<double>& positions,
+                  const Progress& progress, const AnalysisChoice& choice) {
   if (c.bench)
     throw InputError(ErrorCode::conflicting_keys, "traverse: a bench case has no wheelset to move.",
                      "name a case with [wheel] and [rail].");
@@ -37,8 +43,7 @@ Traverse traverse(const Case& c, const std::vector<double>& positions, const Pro
   refuse_missing_analyses(c, *choice.registry);
   Traverse t;
   t.asked = c;
-  progress.at(0.0, "reading profiles");
-  t.locator = prepare(c);
+  t.locator = std::move(locator);
   const double yaw_rad = c.state.yaw_mrad * 1e-3;
   for (std::size_t i = 0; i < positions.size(); ++i) {
     if (i % 64 == 0)

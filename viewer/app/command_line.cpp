@@ -54,10 +54,16 @@ int run_command_line(int argc, char** argv, const Progress& progress) {
   CLI::App app{"Where a wheelset touches the track, how hard, and what the touch does."};
   app.name("runband");
   app.set_version_flag("--version", std::string("runband ") + version());
-  app.require_subcommand(1);
+  app.require_subcommand(0, 1);
   app.footer(
       "Exit status: 0 done, 2 what was written, 3 a file, 4 no convergence, 5 a plugin, 130 stopped.\n"
       "Nothing here is a safety acceptance; the applicable standards and licensed practice decide.");
+
+  ViewOptions view;
+  auto* view_verb = app.add_subcommand("view", "the window, on a case (without any command: on the demo case)");
+  add_case(view_verb, view.input);
+  view_verb->add_option("--frames", view.frames, "end after so many frames (to try a machine's drawing)")
+      ->check(CLI::Range(1L, 1000000L));
 
   SolveOptions solve;
   auto* solve_verb = app.add_subcommand("solve", "contacts, forces and patches of a case");
@@ -119,6 +125,7 @@ int run_command_line(int argc, char** argv, const Progress& progress) {
   } catch (const CLI::ParseError& error) {
     throw as_error(app, error, argc, argv);
   }
+  if (*view_verb || app.get_subcommands().empty()) return view_command(view, progress);
   if (*solve_verb) return solve_command(solve, progress);
   if (*traverse_verb) return traverse_command(traverse, progress);
   if (*draw_verb) return draw_command(draw, progress);

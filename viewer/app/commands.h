@@ -22,6 +22,12 @@ struct OutputOptions {
   std::string out;  ///< folder (solve, traverse, profile) or file (draw)
 };
 
+struct ViewOptions {
+  CaseOptions input;
+  long frames = 0;  ///< ends after so many; 0: when it is closed
+};
+int view_command(const ViewOptions&, const Progress&);
+
 struct SolveOptions {
   CaseOptions input;
   OutputOptions output;

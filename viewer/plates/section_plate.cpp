@@ -25,13 +25,13 @@ struct Section {
   Vec2 normal;  ///< into the wheel
 };
 
-Section section_of(const Solution& solution, const ContactZone& zone) {
+Section section_of(const Solution& solution, const ContactZone& zone, double chord_error = kChord) {
   const Pairing& pairing = solution.locator->pairing();
   const double sign = side_sign(zone.side);
   Section section;
   section.contact = {sign * zone.track_mm.y(), zone.track_mm.z()};
   section.normal = Vec2(sign * zone.frame(1, 2), zone.frame(2, 2)).normalized();
-  for (const Vec2& p : rail_outline(pairing.rail(zone.side), kChord, 1e9))
+  for (const Vec2& p : rail_outline(pairing.rail(zone.side), chord_error, 1e9))
     section.rail.push_back(pairing.mount(zone.side).outward(p));
   // The wheel is turned by the roll and put so that its touching point meets the contact (or stands off by the gap).
   const double roll = sign * solution.pose.roll_rad;
@@ -39,7 +39,7 @@ Section section_of(const Solution& solution, const ContactZone& zone) {
   const double radius = pairing.rolling_radius_mm(zone.side);
   const Vec2 touching = turn * Vec2(zone.wheel_y_mm, zone.wheel_z_mm);
   const Vec2 shift = section.contact + zone.gap_mm * section.normal - touching;
-  for (const Vec2& p : wheel_outline(pairing.wheel(zone.side), radius, kChord, 1e9))
+  for (const Vec2& p : wheel_outline(pairing.wheel(zone.side), radius, chord_error, 1e9))
     section.wheel.push_back(turn * Vec2(p.x(), p.y() + radius) + shift);
   return section;
 }
@@ -156,6 +156,13 @@ void draw_detail(const Section& section, const Contact& contact, Point centre, d
 }
 
 }  // namespace
+
+plot::Plot section_plot(const Solution& solution, const ContactZone& zone, const plot::Theme& theme,
+                        double chord_error_mm) {
+  plot::Plot p;
+  add_bodies(p, section_of(solution, zone, chord_error_mm), theme);
+  return p;
+}
 
 void draw_section_plate(const Solution& solution, const Plate& plate, plot::Canvas& canvas) {
   const plot::Theme& theme = plot::theme(plate.theme);

@@ -48,6 +48,9 @@ plot::HeatMap pressure_map(const Contact&, double highest_MPa);
 std::string detail_letter(const Contact&);
 /// In capitals, for the label over a figure.
 std::string contact_label(const Contact&);
+/// Wheel and rail section of one side as they stand at this contact: (distance from the track's centre line, height above
+/// the running surface), mm; hatched bodies and outlines, no axes set.
+plot::Plot section_plot(const Solution&, const ContactZone&, const plot::Theme&, double chord_error_mm = 0.01);
 /// The ellipse's outline in the contact frame.
 plot::Line ellipse_line(const HertzEllipse&);
 

@@ -53,6 +53,8 @@ class Fonts {
   Shaped shape(std::string_view words, const Font& font) const;
   TextSize measure(std::string_view words, const Font& font) const;
   const FontFile& main_file(bool strong) const { return *chains_[strong ? 1 : 0].front(); }
+  /// In the order in which they are asked for a letter.
+  const std::vector<const FontFile*>& chain(bool strong) const { return chains_[strong ? 1 : 0]; }
 
  private:
   Fonts();

@@ -2,17 +2,8 @@
 
 #include <vtkActor.h>
 #include <vtkCamera.h>
-#include <vtkCellArray.h>
-#include <vtkCellData.h>
-#include <vtkFeatureEdges.h>
 #include <vtkGenericOpenGLRenderWindow.h>
-#include <vtkLight.h>
 #include <vtkNew.h>
-#include <vtkPoints.h>
-#include <vtkPolyData.h>
-#include <vtkPolyDataMapper.h>
-#include <vtkPolyDataNormals.h>
-#include <vtkProperty.h>
 #include <vtkRenderer.h>
 #include <vtkUnsignedCharArray.h>
 
@@ -22,6 +13,7 @@
 
 #include "core/base/error.h"
 #include "viewer/plot/colour_map.h"
+#include "viewer/scene/bodies.h"
 #include "viewer/scene/headless_gl.h"
 #include "viewer/scene/scene_meshes.h"
 
@@ -31,82 +23,14 @@ namespace {
 
 constexpr int kFiner = 2;  // drawn at twice the size and averaged down: smooth edges, same bits every time
 
-vtkNew<vtkPolyData> poly_data(const TriangleMesh& mesh, double highest) {
-  vtkNew<vtkPolyData> data;
-  vtkNew<vtkPoints> points;
-  points->SetDataTypeToDouble();
-  for (const Vec3& v : mesh.vertices) points->InsertNextPoint(v.x(), v.y(), v.z());
-  vtkNew<vtkCellArray> triangles;
-  for (const auto& t : mesh.triangles) {
-    const vtkIdType ids[3] = {t[0], t[1], t[2]};
-    triangles->InsertNextCell(3, ids);
-  }
-  data->SetPoints(points);
-  data->SetPolys(triangles);
-  if (!mesh.scalar.empty()) {
-    vtkNew<vtkUnsignedCharArray> colours;
-    colours->SetNumberOfComponents(3);
-    colours->SetName("colour");
-    for (const auto& t : mesh.triangles) {
-      const plot::Colour c =
-          plot::colour_at(plot::ColourMap::ember, mesh.scalar[static_cast<std::size_t>(t[0])] / highest);
-      colours->InsertNextTuple3(plot::byte_of(c.r), plot::byte_of(c.g), plot::byte_of(c.b));
-    }
-    data->GetCellData()->SetScalars(colours);
-  }
-  return data;
-}
-
-/// Shaded surface with its sharp edges as ink lines.
-void add_body(vtkRenderer* renderer, const TriangleMesh& mesh, const plot::Colour& fill, const plot::Colour& ink,
-              double opacity, double line_px) {
-  const auto data = poly_data(mesh, 1);
-  vtkNew<vtkPolyDataNormals> normals;
-  normals->SetInputData(data);
-  normals->SetFeatureAngle(30);
-  normals->SplittingOn();
-  normals->ConsistencyOff();
-  vtkNew<vtkPolyDataMapper> mapper;
-  mapper->SetInputConnection(normals->GetOutputPort());
-  mapper->ScalarVisibilityOff();
-  vtkNew<vtkActor> actor;
-  actor->SetMapper(mapper);
-  actor->GetProperty()->SetColor(fill.r, fill.g, fill.b);
-  actor->GetProperty()->SetAmbient(0.50);
-  actor->GetProperty()->SetDiffuse(0.50);
-  actor->GetProperty()->SetSpecular(0.0);
-  actor->GetProperty()->SetOpacity(opacity);
-  if (opacity < 1) actor->GetProperty()->BackfaceCullingOn();
-  renderer->AddActor(actor);
-
-  vtkNew<vtkFeatureEdges> edges;
-  edges->SetInputData(data);
-  edges->BoundaryEdgesOff();
-  edges->NonManifoldEdgesOff();
-  edges->ManifoldEdgesOff();
-  edges->FeatureEdgesOn();
-  edges->SetFeatureAngle(35);
-  edges->ColoringOff();
-  vtkNew<vtkPolyDataMapper> edge_mapper;
-  edge_mapper->SetInputConnection(edges->GetOutputPort());
-  edge_mapper->ScalarVisibilityOff();
-  vtkNew<vtkActor> edge_actor;
-  edge_actor->SetMapper(edge_mapper);
-  edge_actor->GetProperty()->SetColor(ink.r, ink.g, ink.b);
-  edge_actor->GetProperty()->LightingOff();
-  edge_actor->GetProperty()->SetLineWidth(static_cast<float>(line_px));
-  edge_actor->GetProperty()->SetOpacity(opacity < 1 ? 0.45 : 1.0);
-  renderer->AddActor(edge_actor);
+void add_body(vtkRenderer* renderer, const Body& body) {
+  renderer->AddActor(body.surface);
+  renderer->AddActor(body.edges);
 }
 
 void add_patch(vtkRenderer* renderer, const Contact& contact, double highest) {
-  const auto data = poly_data(patch_sheet(contact, 0.4), highest);
-  vtkNew<vtkPolyDataMapper> mapper;
-  mapper->SetInputData(data);
-  vtkNew<vtkActor> actor;
-  actor->SetMapper(mapper);
-  actor->GetProperty()->LightingOff();
-  renderer->AddActor(actor);
+  const PatchInks inks{plot::ColourMap::ember, {0, highest}, 0, {}};
+  renderer->AddActor(make_flat(patch_sheet(contact, 0.4), &inks, {}));
 }
 
 void aim(vtkRenderer* renderer, const Contact& contact) {
@@ -211,20 +135,18 @@ ScenePicture draw_scene(const Solution& solution, const SceneOptions& options) {
   renderer->SetGradientBackground(false);
   window->AddRenderer(renderer);
 
-  // On a dark ground the bodies need more light than their drawn fills have.
-  const bool dark = options.theme == plot::ThemeName::dark;
-  const plot::Colour wheel_fill = dark ? plot::mix(theme.wheel_fill, theme.steel, 0.55) : theme.wheel_fill;
-  const plot::Colour rail_fill = dark ? plot::mix(theme.rail_fill, theme.steel, 0.55) : theme.rail_fill;
+  const plot::Colour wheel_fill = wheel_colour(theme), rail_fill = rail_colour(theme);
   const double line_px = std::max(1.0, 0.25 * options.pixels_per_mm * kFiner);
   const MeshOptions fine{.chord_error_mm = 0.03, .max_edge_mm = 60};
   const MeshOptions round{.chord_error_mm = 0.06};
   for (const Side side : {Side::left, Side::right}) {
-    add_body(renderer, placed_rail(solution, side, fine), rail_fill, theme.ink, 1.0, line_px);
+    add_body(renderer, make_body(placed_rail(solution, side, fine), rail_fill, theme.ink, 1.0, line_px));
     // The wheel over the looked-at patch is glass, so that the patch is seen.
     const bool over = side == looked_at.zone.side;
-    add_body(renderer, placed_wheel(solution, side, round), wheel_fill, theme.ink, over ? 0.34 : 1.0, line_px);
+    add_body(renderer,
+             make_body(placed_wheel(solution, side, round), wheel_fill, theme.ink, over ? 0.34 : 1.0, line_px));
   }
-  add_body(renderer, placed_axle(solution, round), wheel_fill, theme.ink, 1.0, line_px);
+  add_body(renderer, make_body(placed_axle(solution, round), wheel_fill, theme.ink, 1.0, line_px));
   for (std::size_t k = 0; k < solution.contacts.size(); ++k)
     if (solution.contacts[k].patch && k != options.contact) add_patch(renderer, solution.contacts[k], highest);
   // The looked-at patch is drawn over the glass of the wheel, so that its colours are those of the colour bar.
@@ -236,16 +158,7 @@ ScenePicture draw_scene(const Solution& solution, const SceneOptions& options) {
   window->AddRenderer(over_glass);
   add_patch(over_glass, looked_at, highest);
 
-  renderer->AutomaticLightCreationOff();
-  vtkNew<vtkLight> light;
-  light->SetLightTypeToCameraLight();
-  light->SetPosition(-0.5, 0.9, 1.0);
-  renderer->AddLight(light);
-  vtkNew<vtkLight> fill;
-  fill->SetLightTypeToCameraLight();
-  fill->SetPosition(1.0, 0.1, 0.6);
-  fill->SetIntensity(0.4);
-  renderer->AddLight(fill);
+  add_lights(renderer);
   aim(renderer, looked_at);
   renderer->ResetCameraClippingRange();
 
