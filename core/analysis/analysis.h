@@ -102,6 +102,8 @@ class Analysis {
  public:
   virtual ~Analysis() = default;
   virtual Description describe() const = 0;
+  /// Fields lie on the patch's grid (context.patch.grid). What takes longer than a few milliseconds calls progress.check()
+  /// in its loops, which ends it when the user asks to stop.
   /// @throws Error; any exception becomes a caution on this analysis and the others go on.
   virtual AnalysisResult run(const PatchContext&, const Parameters&, const Progress&) const;
   virtual AnalysisResult run(const WheelsetContext&, const Parameters&, const Progress&) const;

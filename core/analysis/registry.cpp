@@ -6,12 +6,13 @@
 #include <unistd.h>
 
 #include <algorithm>
-#include <cmath>
 #include <cstdlib>
 #include <set>
 #include <sstream>
+#include <utility>
 
-#include "core/analysis/plugin.h"
+#include "core/analysis/plugin_file.h"
+#include "core/analysis/result_check.h"
 #include "core/base/error.h"
 #include "core/base/text.h"
 
@@ -21,76 +22,16 @@ namespace fs = std::filesystem;
 
 namespace {
 
-/// The first difference between two tags as a sentence; empty if there is none.
-std::string difference(const PluginTag& theirs, const PluginTag& ours) {
-  if (theirs.magic != ours.magic) return "it is not a plugin of this program (its tag does not begin as one).";
-  const struct {
-    const char* what;
-    std::uint32_t theirs, ours;
-  } rows[] = {{"SDK version", theirs.sdk_version, ours.sdk_version},
-              {"size of the tag", theirs.tag_size, ours.tag_size},
-              {"size of a result", theirs.result_size, ours.result_size},
-              {"size of a field", theirs.field_size, ours.field_size},
-              {"size of a description", theirs.description_size, ours.description_size},
-              {"size of a parameter", theirs.parameter_size, ours.parameter_size},
-              {"size of a patch context", theirs.patch_context_size, ours.patch_context_size},
-              {"size of a wheelset context", theirs.wheelset_context_size, ours.wheelset_context_size},
-              {"Eigen's alignment", theirs.eigen_alignment, ours.eigen_alignment},
-              {"Eigen's version", theirs.eigen_version, ours.eigen_version},
-              {"compiler", theirs.compiler, ours.compiler},
-              {"standard library", theirs.standard_library, ours.standard_library},
-              {"language level", theirs.language, ours.language}};
-  for (const auto& row : rows) {
-    if (row.theirs != row.ours)
-      return std::string("its ") + row.what + " is " + std::to_string(row.theirs) + ", this program's is " +
-             std::to_string(row.ours) + "; build it again against this version.";
-  }
-  return "";
-}
-
-/// What is wrong with a result; empty if nothing.
-std::string fault_of(const AnalysisResult& result, const Description& d) {
-  const auto finite = [](const std::vector<double>& values) {
-    return std::all_of(values.begin(), values.end(), [](double v) { return std::isfinite(v); });
-  };
-  std::set<std::string> names;
-  for (const Field& f : result.fields) {
-    names.insert(f.name);
-    if (f.components < 1 ||
-        f.values.size() != static_cast<std::size_t>(f.grid.cells()) * static_cast<std::size_t>(f.components))
-      return "field \"" + f.name + "\" has " + std::to_string(f.values.size()) +
-             " values where its grid has room for " + std::to_string(f.grid.cells() * std::max(1, f.components)) + ".";
-    if (!finite(f.values)) return "field \"" + f.name + "\" holds a value that is not a number.";
-  }
-  for (const Curve& c : result.curves) {
-    names.insert(c.name);
-    if (c.x.size() != c.y.size()) return "curve \"" + c.name + "\" has as many x as y no more.";
-    if (!finite(c.x) || !finite(c.y)) return "curve \"" + c.name + "\" holds a value that is not a number.";
-  }
-  for (const Quantity& q : result.quantities) {
-    names.insert(q.name);
-    if (!std::isfinite(q.value)) return "quantity \"" + q.name + "\" is not a number.";
-  }
-  for (const Mark& m : result.marks) {
-    names.insert(m.name);
-    if (m.x_mm.size() != m.s_mm.size() || !finite(m.x_mm) || !finite(m.s_mm))
-      return "mark \"" + m.name + "\" is not whole.";
-  }
-  for (const Volume& v : result.volumes) {
-    names.insert(v.name);
-    if (v.values.size() != static_cast<std::size_t>(v.grid.cells()) * v.depth_mm.size() || !finite(v.values))
-      return "volume \"" + v.name + "\" does not fit its grid, or holds a value that is not a number.";
-  }
-  for (const std::string& name : d.gives)
-    if (!names.contains(name)) return "it promises \"" + name + "\" and did not give it.";
-  return "";
-}
-
+/// An exception's words on one line.
 std::string sentence_of(const std::exception& error) {
-  std::string text = error.what();
-  std::replace(text.begin(), text.end(), '\n', ' ');
-  return text;
+  std::istringstream words(error.what());
+  std::string text;
+  for (std::string word; words >> word;) text += (text.empty() ? "" : " ") + word;
+  return text.empty() ? "it threw an exception without a word." : text;
 }
+
+const Grid* grid_of(const PatchContext& context) { return &context.patch.grid; }
+const Grid* grid_of(const WheelsetContext&) { return nullptr; }
 
 }  // namespace
 
@@ -102,15 +43,22 @@ struct AnalysisRegistry::Parts {
   std::map<std::string, Entry> entries;
   std::vector<PluginProblem> problems;
 
-  void add(std::unique_ptr<Analysis> analysis, const fs::path& file) {
-    Description d = analysis->describe();
-    if (d.id.empty()) throw PluginError(ErrorCode::plugin_failed, "it has no id.", "give it one.");
+  /// @return why it cannot be used, or an empty text.
+  std::string add(std::unique_ptr<Analysis> analysis) {
+    Description d;
+    try {
+      d = analysis->describe();
+    } catch (const std::exception& error) {
+      return "it failed while it described itself: " + sentence_of(error);
+    } catch (...) {
+      return "it failed while it described itself.";
+    }
+    if (std::string fault = fault_of(d); !fault.empty()) return fault;
     if (entries.contains(d.id))
-      throw PluginError(ErrorCode::plugin_failed, "its id \"" + d.id + "\" is taken by another analysis.",
-                        "give it an id of its own.");
-    static_cast<void>(file);
+      return "its id \"" + d.id + "\" is taken by another analysis; give it an id of its own.";
     std::string id = d.id;
     entries.emplace(std::move(id), Entry{std::move(d), std::move(analysis)});
+    return "";
   }
 
   template <typename Context>
@@ -131,7 +79,8 @@ struct AnalysisRegistry::Parts {
     try {
       result = entry.analysis->run(context, parameters, progress);
     } catch (const Cancelled&) {
-      throw;
+      if (progress.stop.stop_requested()) throw;
+      return fail("analysis_failed", "it stopped although nobody asked it to.");
     } catch (const std::exception& error) {
       return fail("analysis_failed", sentence_of(error));
     } catch (...) {
@@ -139,7 +88,8 @@ struct AnalysisRegistry::Parts {
     }
     progress.check();
     result.id = d.id;
-    if (const std::string fault = fault_of(result, d); !fault.empty()) return fail("analysis_failed", fault);
+    if (const std::string fault = fault_of(result, d, grid_of(context)); !fault.empty())
+      return fail("analysis_failed", fault);
     return result;
   }
 
@@ -172,11 +122,19 @@ AnalysisRegistry::~AnalysisRegistry() = default;
 AnalysisRegistry::AnalysisRegistry(AnalysisRegistry&&) noexcept = default;
 AnalysisRegistry& AnalysisRegistry::operator=(AnalysisRegistry&&) noexcept = default;
 
-void AnalysisRegistry::add(std::unique_ptr<Analysis> analysis) { parts_->add(std::move(analysis), {}); }
+void AnalysisRegistry::add(std::unique_ptr<Analysis> analysis) {
+  if (const std::string problem = parts_->add(std::move(analysis)); !problem.empty())
+    throw PluginError(ErrorCode::plugin_failed, "an analysis cannot be used: " + problem, "mend its description.");
+}
 
-void AnalysisRegistry::load_folder(const fs::path& folder) {
+void AnalysisRegistry::load_folder(const fs::path& folder, bool must_exist) {
   std::error_code ignored;
-  if (!fs::is_directory(folder, ignored)) return;
+  if (!fs::is_directory(folder, ignored)) {
+    if (must_exist)
+      parts_->problems.push_back(
+          {folder, "there is no such folder, so no plugin was looked for in it; see $RUNBAND_PLUGIN_PATH."});
+    return;
+  }
   struct stat status {};
   if (::stat(folder.c_str(), &status) != 0 || (status.st_mode & (S_IWGRP | S_IWOTH)) != 0 ||
       (status.st_uid != ::geteuid() && status.st_uid != 0)) {
@@ -191,33 +149,16 @@ void AnalysisRegistry::load_folder(const fs::path& folder) {
   }
   std::sort(files.begin(), files.end());
   for (const fs::path& file : files) {
-    const auto problem = [&](const std::string& text) { parts_->problems.push_back({file, text}); };
-    void* handle = ::dlopen(file.c_str(), RTLD_NOW | RTLD_LOCAL);
-    if (handle == nullptr) {
-      const char* why = ::dlerror();
-      problem(std::string("it cannot be loaded: ") + (why == nullptr ? "unknown" : why));
-      continue;
-    }
-    using Tag = const PluginTag* (*)();
-    using Make = Analysis* (*)();
-    const auto tag = reinterpret_cast<Tag>(::dlsym(handle, "runband_plugin_tag"));
-    const auto make = reinterpret_cast<Make>(::dlsym(handle, "runband_plugin_make"));
-    if (tag == nullptr || make == nullptr) {
-      problem("it has no entry point; declare one with RUNBAND_ANALYSIS.");
-      continue;
-    }
-    if (const std::string text = difference(*tag(), plugin_tag()); !text.empty()) {
-      problem(text);
-      continue;
-    }
-    // The library stays loaded: its code must outlive every object it made.
+    PluginFile opened;
     try {
-      parts_->add(std::unique_ptr<Analysis>(make()), file);
+      opened = open_plugin_file(file);
     } catch (const std::exception& error) {
-      problem("it failed while it described itself: " + sentence_of(error));
+      opened.problem = "it failed while it made its analysis: " + sentence_of(error);
     } catch (...) {
-      problem("it failed while it described itself.");
+      opened.problem = "it failed while it made its analysis.";
     }
+    if (opened.analysis) opened.problem = parts_->add(std::move(opened.analysis));
+    if (!opened.problem.empty()) parts_->problems.push_back({file, opened.problem});
   }
 }
 
@@ -320,7 +261,8 @@ std::vector<fs::path> plugin_folders() {
 const AnalysisRegistry& installed_analyses() {
   static const AnalysisRegistry kRegistry = [] {
     AnalysisRegistry registry;
-    for (const fs::path& folder : plugin_folders()) registry.load_folder(folder);
+    bool named_by_user = false;  // the first is the program's own
+    for (const fs::path& folder : plugin_folders()) registry.load_folder(folder, std::exchange(named_by_user, true));
     return registry;
   }();
   return kRegistry;

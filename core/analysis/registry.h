@@ -25,9 +25,10 @@ class AnalysisRegistry {
   AnalysisRegistry& operator=(AnalysisRegistry&&) noexcept;
 
   /// Loads every runband_*.so in the folder; what cannot be used becomes a problem. A folder that others may write to is
-  /// refused whole. A folder that does not exist is passed over.
-  void load_folder(const std::filesystem::path& folder);
-  /// An analysis of the program's own, or of a test. @throws PluginError (plugin_failed) if its id is taken.
+  /// refused whole. A folder that does not exist is passed over, or a problem where it must exist.
+  void load_folder(const std::filesystem::path& folder, bool must_exist = false);
+  /// An analysis of the program's own, or of a test. @throws PluginError (plugin_failed) if its id is taken or its
+  /// description breaks the contract (result_check.h).
   void add(std::unique_ptr<Analysis> analysis);
 
   const std::vector<PluginProblem>& problems() const;
@@ -41,8 +42,9 @@ class AnalysisRegistry {
   std::vector<std::vector<std::string>> order(Scope scope, const std::vector<std::string>& wanted) const;
 
   /// Runs them. A failing one becomes a result that holds only a caution (analysis_failed); those that need it become
-  /// cautions (input_missing). Results are checked: shapes, names given, no not-a-number.
-  /// @throws InputError from parameters; Cancelled.
+  /// cautions (input_missing). Results are checked (result_check.h): shapes, names, promises, no not-a-number; what a stopped
+  /// run returned is never read.
+  /// @throws InputError from parameters; Cancelled if a stop was requested.
   std::map<std::string, AnalysisResult> run(PatchContext, const std::vector<std::string>& wanted,
                                             const std::map<std::string, std::map<std::string, ParameterValue>>& asked,
                                             const Progress&) const;

@@ -134,6 +134,11 @@ void refuse_missing_analyses(const Case& c, const AnalysisRegistry& registry) {
   }
 }
 
+void add_plugin_problems(const AnalysisRegistry& registry, std::vector<Caution>& cautions) {
+  for (const PluginProblem& problem : registry.problems())
+    cautions.push_back({"plugin_not_used", Severity::warning, problem.file.string() + ": " + problem.text});
+}
+
 std::shared_ptr<const Locator> prepare(const Case& c) {
   if (c.bench) return nullptr;
   auto pairing = std::make_shared<const Pairing>(load_pair(c.wheels, ProfileKind::wheel, c),
@@ -175,8 +180,7 @@ Solution solve(const Case& c, std::shared_ptr<const Locator> locator, const Prog
     cautions.insert(cautions.end(), contact.patch->cautions.begin(), contact.patch->cautions.end());
   }
   run_analyses(solution, choice, progress);
-  for (const PluginProblem& problem : choice.registry->problems())
-    solution.cautions.push_back({"plugin_not_used", Severity::warning, problem.file.string() + ": " + problem.text});
+  add_plugin_problems(*choice.registry, solution.cautions);
   solution.cautions.push_back(
       {"no_acceptance", Severity::note,
        "Nothing here is a safety acceptance; the applicable standards and licensed practice decide."});

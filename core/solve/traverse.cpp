@@ -68,6 +68,7 @@ Traverse traverse(const Case& c, std::shared_ptr<const Locator> locator, const s
     t.jumps = t.locator->jumps(positions.front(), positions.back(), yaw_rad, c.state.reference);
   const WheelsetPose middle{0.5 * (positions.front() + positions.back()), c.state.reference, yaw_rad, 0, 0};
   t.analyses = analyses_of_wheelset(c, *t.locator, middle, choice, progress);
+  add_plugin_problems(*choice.registry, t.cautions);
   t.cautions.push_back(
       {"lateral_reference", Severity::note,
        std::string("Lateral displacement is taken at ") +

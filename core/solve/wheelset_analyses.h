@@ -3,6 +3,7 @@
 
 #include <map>
 #include <string>
+#include <vector>
 
 #include "core/solve/solution.h"
 
@@ -15,5 +16,8 @@ std::map<std::string, AnalysisResult> analyses_of_wheelset(const Case&, const Lo
 /// Parameters of an analysis that is not there would otherwise be taken in silence.
 /// @throws InputError (unknown_name) with the nearest name.
 void refuse_missing_analyses(const Case&, const AnalysisRegistry&);
+
+/// One caution (plugin_not_used) for each plugin that was found and not used.
+void add_plugin_problems(const AnalysisRegistry&, std::vector<Caution>&);
 
 }  // namespace runband

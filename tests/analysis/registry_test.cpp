@@ -120,7 +120,19 @@ TEST(Registry, AFailingOneDoesNotHarmTheOthers) {
          r.fields.push_back(f);
          return r;
        },
-       "2 values"}};
+       "2 values"},
+      {[&](const PatchContext&, const Parameters&, const Progress&) {
+         AnalysisResult r = quantity(1);
+         Field f;
+         f.name = "f";
+         f.grid = {3, 1, 0, 0, 1, 1};
+         f.values = {1, 2, 3};
+         r.fields.push_back(f);
+         return r;
+       },
+       "lies on a grid of 3 x 1 cells, the patch's has 0 x 0 cells"},
+      {[](const PatchContext&, const Parameters&, const Progress&) -> AnalysisResult { throw Cancelled(); },
+       "nobody asked"}};
   for (const auto& [run_it, sentence] : bad) {
     const auto results = with(run_it);
     ASSERT_EQ(results.at("bad").cautions.size(), 1U);
@@ -139,6 +151,17 @@ TEST(Registry, StopsOneThatWaits) {
                                [&](const PatchContext&, const Parameters&, const Progress& progress) -> AnalysisResult {
                                  stop.request_stop();
                                  for (;;) progress.check();
+                               }));
+  EXPECT_THROW(run(r, {}, Progress{nullptr, stop.get_token()}), Cancelled);
+}
+
+TEST(Registry, NothingIsReadFromOneThatSwallowedTheStop) {
+  AnalysisRegistry r;
+  std::stop_source stop;
+  r.add(std::make_unique<Made>("deaf", std::vector<std::string>{}, std::vector<std::string>{"x"},
+                               [&](const PatchContext&, const Parameters&, const Progress&) {
+                                 stop.request_stop();
+                                 return AnalysisResult{};
                                }));
   EXPECT_THROW(run(r, {}, Progress{nullptr, stop.get_token()}), Cancelled);
 }
@@ -180,6 +203,9 @@ TEST(PluginFolder, WritableByOthersIsRefusedWhole) {
   AnalysisRegistry nothing;
   nothing.load_folder(folder / "nowhere");
   EXPECT_TRUE(nothing.problems().empty());
+  nothing.load_folder(folder / "nowhere", true);
+  ASSERT_EQ(nothing.problems().size(), 1U);
+  EXPECT_NE(nothing.problems()[0].text.find("no such folder"), std::string::npos);
 }
 
 TEST(Installed, ThePluginsOfTheBuildAreThere) {

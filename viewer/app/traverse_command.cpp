@@ -42,7 +42,7 @@ void print_traverse(const Traverse& t, std::ostream& out) {
     }
     for (const Caution& k : result.cautions) out << "Caution, " << id << ": " << k.text << "\n";
   }
-  for (const Caution& k : t.cautions) out << "Note: " << k.text << "\n";
+  for (const Caution& k : t.cautions) out << (k.severity == Severity::note ? "Note: " : "Warning: ") << k.text << "\n";
 }
 
 }  // namespace
