@@ -34,6 +34,9 @@ struct RigidTouch {
   double contact_angle_rad = 0;
   double rolling_radius_mm = 0;
   Vec3 track_mm = Vec3::Zero();
+  /// d rolling_radius_mm / d lateral_mm as the wheelset moves and rolls: 0 at a corner of the wheel, not a number where
+  /// the curvatures leave it open, and 0 in rigid_without_roll().
+  double rolling_radius_rate = 0;
 };
 
 struct RigidContact {
@@ -84,6 +87,13 @@ struct ContactJump {
   double wheel_y_from_mm = 0, wheel_y_to_mm = 0;
 };
 
+/// The wheelset moved across the track.
+struct RigidSweep {
+  /// Ascending; denser where the touching points hurry; both sides of every jump, less than 3e-7 mm apart.
+  std::vector<RigidContact> contacts;
+  std::vector<ContactJump> jumps;  ///< ascending
+};
+
 /// Tables made once for a pairing; then every position is cheap. Immutable, usable from several threads.
 class Locator {
  public:
@@ -114,7 +124,12 @@ class Locator {
   /// The same over a whole grid, fast. values[j * nx + i].
   std::vector<double> gap_field_mm(const ContactZone& zone, const WheelsetPose& pose, const Grid& grid) const;
 
+  /// As far as there is contact between two lateral positions (to 0.01 mm), outward from the one nearest to the middle
+  /// of the track. Between neighbours the touching points move as the rates at both say, to 0.02 mm, and rolling radii
+  /// to 0.001 mm. @throws InputError as rigid(), at the position it starts from; out_of_range unless from <= to.
+  RigidSweep sweep(double from_mm, double to_mm, double yaw_rad, LateralReference reference) const;
   /// Jumps of the touching points between two lateral positions, each found to 1e-6 mm.
+  /// @throws InputError as rigid() at either end.
   std::vector<ContactJump> jumps(double from_mm, double to_mm, double yaw_rad, LateralReference reference) const;
 
  private:

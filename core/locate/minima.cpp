@@ -9,12 +9,14 @@ namespace runband {
 
 namespace {
 
+constexpr double kInfinity = std::numeric_limits<double>::infinity();
 constexpr double kTableError_mm = 2e-4;  // of the scan, generously
+constexpr double kTangent = 3e-12;       // angle at which the tangents of wheel and rail are one
 constexpr double kNearEdge = 1e-3;       // slope difference below which a minimum is smooth, not a corner
 
 // Whether sample i is no higher than its neighbours (on a plateau, its flange-side end).
 bool is_minimum(const Eigen::ArrayXd& gap, Eigen::Index i) {
-  if (!std::isfinite(gap[i])) return false;
+  if (!(gap[i] < kInfinity)) return false;
   const bool left = i == 0 || gap[i - 1] > gap[i];
   const bool right = i + 1 == gap.size() || gap[i + 1] >= gap[i];
   return left && right;
@@ -30,11 +32,10 @@ double depth_below(const Eigen::ArrayXd& gap, Eigen::Index i) {
 
 }  // namespace
 
-Touch SideGeometry::polish(Eigen::Index i, const SidePose& pose, const SearchSpace& space) const {
-  const Eigen::Index n = t_.size();
-  // Bracket: the neighbouring samples, or as far as both profiles reach.
+// The neighbours of sample i, or as far as both profiles reach.
+SideGeometry::Bracket SideGeometry::bracket(Eigen::Index i, const SidePose& pose, const SearchSpace& space) const {
   const auto reach = [&](Eigen::Index neighbour) {
-    if (neighbour < 0 || neighbour >= n) return t_[i];
+    if (neighbour < 0 || neighbour >= t_.size()) return t_[i];
     if (std::isfinite(space.gap[neighbour])) return t_[neighbour];
     double inside = t_[i], outside = t_[neighbour];
     for (int k = 0; k < 50; ++k) {
@@ -43,11 +44,37 @@ Touch SideGeometry::polish(Eigen::Index i, const SidePose& pose, const SearchSpa
     }
     return inside;
   };
-  double a = reach(i - 1), b = reach(i + 1);
-  Sampled at_a = sample(a, pose), at_b = sample(b, pose), best;
-  double t = t_[i];
+  Bracket found;
+  found.a = reach(i - 1);
+  found.b = reach(i + 1);
+  found.t = t_[i];
+  found.at_a = sample(found.a, pose);
+  found.at_b = sample(found.b, pose);
+  return found;
+}
+
+Touch SideGeometry::polish(Eigen::Index i, const SidePose& pose, const SearchSpace& space, const double* known) const {
+  Bracket here = bracket(i, pose, space);
+  // The scan's table may be off by a sample where wheel and rail nearly fit: on, downhill.
+  while (here.at_a.slope_difference * here.at_b.slope_difference > 0.0) {
+    const int down = here.at_a.slope_difference > 0.0 ? -2 : 2;
+    const Eigen::Index on = i + down;
+    if (on < 1 || on + 1 >= t_.size() || !std::isfinite(space.gap[on - 1]) || !std::isfinite(space.gap[on + 1])) break;
+    if (sample(here.t, pose).gap < std::min(here.at_a.gap, here.at_b.gap)) break;  // a dip after all
+    i = on;
+    (down < 0 ? here.b : here.a) = down < 0 ? here.a : here.b;
+    (down < 0 ? here.at_b : here.at_a) = down < 0 ? here.at_a : here.at_b;
+    here.t = t_[i];
+    (down < 0 ? here.a : here.b) = t_[down < 0 ? i - 1 : i + 1];
+    (down < 0 ? here.at_a : here.at_b) = sample(down < 0 ? here.a : here.b, pose);
+    if (known && *known >= here.a && *known <= here.b) return {.t = *known, .gap = kInfinity};
+  }
+  double a = here.a, b = here.b, t = here.t;
+  Sampled at_a = here.at_a, at_b = here.at_b, best;
   bool smooth = true;
-  if (at_a.slope_difference < 0.0 && at_b.slope_difference > 0.0) {
+  if (std::abs(at_a.slope_difference) < kTangent && std::abs(at_b.slope_difference) < kTangent) {
+    best = sample(t, pose);  // wheel and rail fit here: one point is as good as another
+  } else if (at_a.slope_difference < 0.0 && at_b.slope_difference > 0.0) {
     // The gap falls at a and rises at b: the root of the slope difference, by false position with bisection behind it.
     double fa = at_a.slope_difference, fb = at_b.slope_difference;
     const double tolerance = 1e-10 * (b - a);
@@ -57,7 +84,7 @@ Touch SideGeometry::polish(Eigen::Index i, const SidePose& pose, const SearchSpa
       if (!(t > a && t < b)) t = 0.5 * (a + b);
       best = sample(t, pose);
       const double f = best.slope_difference;
-      if (f == 0.0 || std::abs(f) < 1e-13 || b - a < tolerance) break;
+      if (std::abs(f) < kTangent || b - a < tolerance) break;
       if (f > 0.0) {
         b = t;
         fb = f;
@@ -108,6 +135,7 @@ Touch SideGeometry::polish(Eigen::Index i, const SidePose& pose, const SearchSpa
   touch.rail = best.rail.position;
   touch.tangent = best.rail.tangent;
   touch.gap = best.gap;
+  touch.miss = best.slope_difference;
   touch.at_edge = !smooth;
   return touch;
 }
@@ -119,12 +147,43 @@ bool SideGeometry::lowest(const SidePose& pose, SearchSpace& space, Touch& touch
   const double bound = gap.minCoeff(&least);
   if (!std::isfinite(bound)) return false;
   touch = polish(least, pose, space);
-  for (Eigen::Index i = 0; i < gap.size(); ++i) {
+  for (Eigen::Index i = space.first; i < space.last; ++i) {
     if (i == least || !is_minimum(gap, i) || gap[i] - depth_below(gap, i) > touch.gap) continue;
-    const Touch other = polish(i, pose, space);
+    const Touch other = polish(i, pose, space, &touch.t);
     if (other.gap < touch.gap) touch = other;
   }
   return true;
+}
+
+bool SideGeometry::undercut(const SidePose& pose, SearchSpace& space, Touch& touch, double& margin_mm) const {
+  scan(pose, space);
+  const Eigen::ArrayXd& gap = space.gap;
+  const Eigen::Index n = gap.size();
+  margin_mm = kInfinity;
+  const double own = touch.t;
+  bool lower = false;
+  // Between neighbouring samples the gap changes by less than this, down the steepest gauge face.
+  constexpr double kSteep_mm = 10.0;
+  const double high = touch.gap + kSteep_mm;
+  for (Eigen::Index i = space.first; i < space.last; ++i) {
+    if (!(gap[i] < high) || !is_minimum(gap, i)) continue;
+    if (own >= t_[std::max<Eigen::Index>(i - 1, 0)] && own <= t_[std::min(i + 1, n - 1)]) continue;
+    double other_gap = gap[i];
+    if (other_gap - depth_below(gap, i) <= touch.gap) {
+      const Touch other = polish(i, pose, space, &own);
+      constexpr double kSame_mm = 1e-3;
+      if (std::abs(other.t - own) < kSame_mm) continue;
+      other_gap = other.gap;
+      if (other.gap < touch.gap) {
+        margin_mm = touch.gap - other.gap;
+        touch = other;
+        lower = true;
+        continue;
+      }
+    }
+    margin_mm = std::min(margin_mm, other_gap - touch.gap);
+  }
+  return lower;
 }
 
 std::vector<Touch> SideGeometry::minima(const SidePose& pose, SearchSpace& space, double within_mm) const {
@@ -133,7 +192,7 @@ std::vector<Touch> SideGeometry::minima(const SidePose& pose, SearchSpace& space
   std::vector<Touch> touches;
   const double bound = gap.minCoeff();
   if (!std::isfinite(bound)) return touches;
-  for (Eigen::Index i = 0; i < gap.size(); ++i) {
+  for (Eigen::Index i = space.first; i < space.last; ++i) {
     if (!is_minimum(gap, i) || gap[i] - depth_below(gap, i) > bound + within_mm) continue;
     const Touch touch = polish(i, pose, space);
     if (!std::isfinite(touch.gap)) continue;
@@ -144,7 +203,7 @@ std::vector<Touch> SideGeometry::minima(const SidePose& pose, SearchSpace& space
     }
     touches.push_back(touch);
   }
-  double lowest = std::numeric_limits<double>::infinity();
+  double lowest = kInfinity;
   for (const Touch& touch : touches) lowest = std::min(lowest, touch.gap);
   std::erase_if(touches, [&](const Touch& touch) { return touch.gap > lowest + within_mm; });
   return touches;

@@ -153,7 +153,7 @@ RailPoint SideGeometry::rail_at(double u) const {
   constexpr int kMost = 8;
   for (int k = 0; k < kMost; ++k) {
     const double error = rail_outward(p.position).x() - u;
-    if (std::abs(error) < 2e-13 * std::max(1.0, std::abs(u)) || std::abs(d.x()) < kUpright * d.norm()) break;
+    if (std::abs(error) < 4e-16 * std::max(1.0, std::abs(u)) || std::abs(d.x()) < kUpright * d.norm()) break;
     const double next = std::clamp(tau - error / d.x(), low - pad, high + pad);
     if (next == tau) break;
     tau = next;
@@ -165,6 +165,7 @@ RailPoint SideGeometry::rail_at(double u) const {
   point.tau = tau;
   point.position = rail_outward(p.position);
   point.tangent = d.normalized();
+  point.curvature = p.curvature();
   return point;
 }
 
@@ -199,27 +200,40 @@ void SideGeometry::scan(const SidePose& pose, SearchSpace& space) const {
             (a.y() / level2) * (radius_ * space.root);
   const RailTable& table = *rail_table_;
   const double last = static_cast<double>(table.v.size()) - 1.0;
-  for (Eigen::Index i = 0; i < n; ++i) {
-    const double place = (space.u[i] - table.begin) * table.per_step;
-    double gap = kInfinity;
-    if (place >= 0.0 && place < last && slope_[i] < kSteepest && space.root[i] > 0.0) {
-      const auto k = static_cast<std::size_t>(place);
+  const double *u = space.u.data(), *v = space.v.data(), *root = space.root.data(), *slope = slope_.data();
+  const double* rail = table.v.data();
+  double* gap = space.gap.data();
+  const auto beside = [&](Eigen::Index i) { return !(u[i] >= table.begin && u[i] < table.end); };
+  space.first = 0;
+  space.last = n;
+  while (space.first < n && beside(space.first)) ++space.first;
+  while (space.last > space.first && beside(space.last - 1)) --space.last;
+  std::fill(gap, gap + space.first, kInfinity);
+  std::fill(gap + space.last, gap + n, kInfinity);
+  for (Eigen::Index i = space.first; i < space.last; ++i) {
+    const double place = (u[i] - table.begin) * table.per_step;
+    double above = kInfinity;
+    if (place >= 0.0 && place < last && slope[i] < kSteepest && root[i] > 0.0) {
+      const int k = static_cast<int>(place);
       const double part = place - static_cast<double>(k);
-      gap = space.v[i] - (table.v[k] + part * (table.v[k + 1] - table.v[k]));
+      above = v[i] - (rail[k] + part * (rail[k + 1] - rail[k]));
     }
-    space.gap[i] = gap;
+    gap[i] = above;
   }
 }
 
 SideGeometry::Sampled SideGeometry::sample(double t, const SidePose& pose) const {
   Sampled s;
   s.gap = kInfinity;
-  s.wheel = locus(wheel_->at(t), pose);
+  const CurvePoint profile = wheel_->at(t);
+  s.wheel = locus(profile, pose);
   if (!s.wheel.exists) return s;
   s.rail = rail_at(s.wheel.position.y());
   if (!s.rail.exists) return s;
   s.gap = s.wheel.position.z() - s.rail.position.y();
   s.slope_difference = s.wheel.tangent.y() * s.rail.tangent.x() - s.wheel.tangent.x() * s.rail.tangent.y();
+  s.speed = profile.d1.norm();
+  s.bend = s.speed * (profile.curvature() - s.rail.curvature);
   return s;
 }
 

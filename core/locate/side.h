@@ -34,6 +34,7 @@ struct RailPoint {
   double tau = 0;                ///< parameter of the rail curve
   Vec2 position = Vec2::Zero();  ///< (u, v)
   Vec2 tangent = Vec2::UnitX();  ///< unit, towards the field side
+  double curvature = 0;          ///< signed as CurvePoint::curvature(), 1/mm
 };
 
 /// A local minimum of the vertical gap.
@@ -44,12 +45,14 @@ struct Touch {
   Vec2 rail = Vec2::Zero();
   Vec2 tangent = Vec2::UnitX();  ///< of the rail, unit, towards the field side
   double gap = 0;                ///< wheel above rail, vertical, mm
+  double miss = 0;               ///< sine of the angle between the tangents of locus and rail that is left
   bool at_edge = false;          ///< an end of a profile, or a corner of it, touches
 };
 
 /// Scratch memory of a search, kept between calls.
 struct SearchSpace {
   Eigen::ArrayXd u, v, gap, root;
+  Eigen::Index first = 0, last = 0;  ///< samples over the rail lie within [first, last); the gap of others is infinite
 };
 
 class SideGeometry {
@@ -72,11 +75,23 @@ class SideGeometry {
   double field_end_y() const { return field_end_y_; }
   double wheel_y_at(Eigen::Index sample) const { return axial_[sample] - running_circle_y_; }
 
+  /// The gap over one point of the wheel; infinite where locus or rail has no point.
+  struct Sampled {
+    double gap = 0, slope_difference = 0;  ///< sine of the angle from the rail's tangent to the locus'
+    double bend = 0;                       ///< d slope_difference / dt, the locus taken as bent like the profile
+    double speed = 0;                      ///< d arc / dt of the profile
+    LocusPoint wheel;
+    RailPoint rail;
+  };
+  Sampled sample(double t, const SidePose& pose) const;
   /// Parameter of the wheel curve's point nearest to a point of the profile frame that lies on it.
   double wheel_parameter(const Vec2& on_wheel) const;
 
   /// The lowest minimum. `exists` is false where wheel and rail have no common u.
   bool lowest(const SidePose& pose, SearchSpace& space, Touch& touch) const;
+  /// What the scan at `pose` says against `touch`, a minimum of the gap: true, and `touch` replaced, where another is
+  /// lower. `margin_mm` is how much higher the next one is, to the precision of the scan; infinite where there is none.
+  bool undercut(const SidePose& pose, SearchSpace& space, Touch& touch, double& margin_mm) const;
   /// All minima whose vertical gap is at most `within_mm` more than the lowest, in order of t (flange to field side).
   std::vector<Touch> minima(const SidePose& pose, SearchSpace& space, double within_mm) const;
 
@@ -85,15 +100,14 @@ class SideGeometry {
     double begin = 0, end = 0, step = 0, per_step = 0;
     std::vector<double> v, tau;
   };
-  struct Sampled {
-    double gap = 0, slope_difference = 0;
-    LocusPoint wheel;
-    RailPoint rail;
-  };
-
   void scan(const SidePose& pose, SearchSpace& space) const;
-  Sampled sample(double t, const SidePose& pose) const;
-  Touch polish(Eigen::Index i, const SidePose& pose, const SearchSpace& space) const;
+  struct Bracket {
+    double a = 0, b = 0, t = 0;
+    Sampled at_a, at_b;
+  };
+  Bracket bracket(Eigen::Index i, const SidePose& pose, const SearchSpace& space) const;
+  /// The minimum near sample i. Where the way there leads past a `known` one, that one, with an infinite gap.
+  Touch polish(Eigen::Index i, const SidePose& pose, const SearchSpace& space, const double* known = nullptr) const;
   static std::shared_ptr<const RailTable> tabulate(const ProfileCurve& rail, const RailMount& mount);
 
   std::shared_ptr<const ProfileCurve> wheel_, rail_;

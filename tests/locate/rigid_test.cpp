@@ -112,6 +112,62 @@ TEST(Rigid, JumpsSeparateTheTwoTouchingPoints) {
     }
 }
 
+// Followed from neighbours, every position of a sweep is the one that a search from scratch finds, up to the flange and
+// through jumps, with yaw and at either reference.
+TEST(Rigid, SweepAgreesWithSinglePositions) {
+  const Locator locate = s1002_on_60e1();
+  for (const double yaw : {0.0, 0.012})
+    for (const LateralReference reference : {LateralReference::axle, LateralReference::rail}) {
+      const RigidSweep sweep = locate.sweep(-7.0, 7.0, yaw, reference);
+      EXPECT_GT(sweep.contacts.back().pose.lateral_mm, 6.2);
+      EXPECT_LE(sweep.contacts.back().pose.lateral_mm, 7.0);
+      double last = -8.0;
+      for (const RigidContact& contact : sweep.contacts) {
+        EXPECT_GT(contact.pose.lateral_mm, last);
+        last = contact.pose.lateral_mm;
+        // Arc and gauge corner of one radius leave the place open at 6.26 mm.
+        if (std::abs(std::abs(last) - 6.2595) < 1.5e-3) continue;
+        const RigidContact single = locate.rigid(last, yaw, reference);
+        EXPECT_NEAR(contact.pose.roll_rad, single.pose.roll_rad, 1e-10) << last << " yaw " << yaw;
+        EXPECT_NEAR(radius_difference(contact), radius_difference(single), 1e-5) << last << " yaw " << yaw;
+      }
+    }
+}
+
+TEST(Rigid, RatesAreTheSlopesOfTheRollingRadii) {
+  const Locator locate = s1002_on_60e1();
+  constexpr double kStep_mm = 1e-4;
+  for (const double yaw : {0.0, 0.012})
+    for (const LateralReference reference : {LateralReference::axle, LateralReference::rail})
+      for (const double y : {-5.6, -3.1, 0.1, 1.7, 4.4, 6.31}) {
+        const RigidContact at = locate.rigid(y, yaw, reference), before = locate.rigid(y - kStep_mm, yaw, reference),
+                           after = locate.rigid(y + kStep_mm, yaw, reference);
+        for (const std::size_t k : {0, 1}) {
+          const double slope = (after.touch[k].rolling_radius_mm - before.touch[k].rolling_radius_mm) / (2 * kStep_mm);
+          // Yaw bends the locus a little differently from the profile.
+          EXPECT_NEAR(at.touch[k].rolling_radius_rate, slope, (yaw == 0.0 ? 1e-3 : 0.05) * (0.01 + std::abs(slope)))
+              << y << " yaw " << yaw << " side " << k;
+        }
+      }
+}
+
+// Between neighbours of a sweep nothing happens that their rates do not foretell: halved, the stretch agrees.
+TEST(Rigid, SweepIsDenseEnoughToInterpolate) {
+  const Locator locate = s1002_on_60e1();
+  const RigidSweep sweep = locate.sweep(-6.1, 6.1, 0.0, LateralReference::axle);
+  for (std::size_t i = 1; i < sweep.contacts.size(); ++i) {
+    const RigidContact &a = sweep.contacts[i - 1], &b = sweep.contacts[i];
+    const double h = b.pose.lateral_mm - a.pose.lateral_mm;
+    if (h < 1e-5) continue;
+    const RigidContact middle = locate.rigid(a.pose.lateral_mm + 0.5 * h, 0.0);
+    for (const std::size_t k : {0, 1}) {
+      const double cubic = 0.5 * (a.touch[k].rolling_radius_mm + b.touch[k].rolling_radius_mm) +
+                           0.125 * h * (a.touch[k].rolling_radius_rate - b.touch[k].rolling_radius_rate);
+      EXPECT_NEAR(middle.touch[k].rolling_radius_mm, cubic, 1e-3) << a.pose.lateral_mm;
+    }
+  }
+}
+
 ErrorCode code_of(const std::function<void()>& action, std::string* text = nullptr) {
   try {
     action();

@@ -67,6 +67,54 @@ TEST(PublishedSteering, WavelengthIsKlingelsOfTheEquivalentCone) {
   EXPECT_NEAR(quantity(r, "frequency_at_3_mm"), 20 / lambda, 1e-9);
 }
 
+// J. Klingel 1883: lambda = 2 pi sqrt(r0 e / (2 tan gamma)); r0 0.46, e 1.5 and the slope 0.05 give 16.5045775914 m. The
+// cone on a crown of 300 mm acts as one of slope gamma / (1 - gamma (r0 + R) / s0) once the wheelset rolls with it
+// (independent computation: 0.0526).
+TEST(PublishedSteering, ConeHasKlingelsWavelengthAtEveryAmplitude) {
+  Case c = pairing("1:20");
+  for (auto& wheel : c.wheels) wheel.profile = "standard:coned_1_20";
+  const AnalysisResult r = steering(c);
+  const Curve& gamma = curve(r, "equivalent_conicity");
+  const Curve& lambda = curve(r, "kinematic_wavelength");
+  for (int a = 1; a <= 4; ++a) {
+    EXPECT_NEAR(at(gamma, a), 0.05 / (1 - 0.05 * 760 / 750.0), 1e-4) << a;
+    EXPECT_NEAR(at(lambda, a), 16.5045775914 * std::sqrt(0.05 / at(gamma, a)), 1e-6) << a;
+    EXPECT_NEAR(at(curve(r, "kinematic_frequency"), a), c.state.speed_m_s / at(lambda, a), 1e-9) << a;
+  }
+}
+
+// F. J. Redtenbacher 1855: R = r0 s / (gamma y), with r0 0.46, s 0.75, slope 0.05 and y 6 mm: 1150 m.
+TEST(PublishedSteering, ConeRollsRedtenbachersCurve) {
+  Case c = pairing("1:20");
+  for (auto& wheel : c.wheels) wheel.profile = "standard:coned_1_20";
+  c.state.lateral_mm = {-6.0};
+  c.track.curve_radius_m = 1150;
+  const AnalysisResult r = steering(c);
+  const double slope = -quantity(r, "radius_difference") / (2 * 6.0);
+  EXPECT_NEAR(slope, 0.05 / (1 - 0.05 * 760 / 750.0), 2e-4);
+  EXPECT_NEAR(quantity(r, "free_rolling_curve"), 1150 * 0.05 / slope, 1e-6);
+  // The same curve asks for the difference of the cone without roll: 2 gamma y.
+  EXPECT_NEAR(quantity(r, "radius_difference_needed"), -2 * 0.05 * 6, 1e-12);
+  EXPECT_NEAR(quantity(r, "lateral_for_needed"), -6.0 * 0.05 / slope, 1e-3);
+  EXPECT_LE(quantity(r, "radius_difference_available"), quantity(r, "radius_difference"));
+}
+
+// Balance of a body in a canted curve (statics): V^2/R cos - g sin; 20 m/s, 400 m, cant 150 mm over 1500 mm.
+TEST(PublishedSteering, CantLeavesTheUnbalancedAcceleration) {
+  Case c = pairing("1:40");
+  c.track.curve_radius_m = -400;
+  c.track.cant_mm = 150;
+  const AnalysisResult r = steering(c);
+  const double unbalanced = 1.0 * std::sqrt(1 - 0.01) - 9.80665 * 0.1;
+  EXPECT_NEAR(quantity(r, "unbalanced_acceleration"), unbalanced, 1e-12);
+  EXPECT_NEAR(quantity(r, "cant_deficiency"), 1500 * unbalanced / 9.80665, 1e-9);
+  EXPECT_NEAR(quantity(r, "outer_wheel_load") + quantity(r, "inner_wheel_load"), 200000, 1e-6);
+  EXPECT_NEAR(quantity(r, "outer_wheel_load") - quantity(r, "inner_wheel_load"),
+              2 * 200000 * unbalanced / 9.80665 * 1500 / 1500, 1e-6);
+  c.state.speed_m_s = quantity(r, "balancing_speed");
+  EXPECT_NEAR(quantity(steering(c), "unbalanced_acceleration"), 0, 1e-12);
+}
+
 Case bench(double nu, double rolling, double across, const std::string& creepage, double friction = 0.3) {
   return parse_case("[bench]\ncurvature_rolling_per_mm = " + std::to_string(rolling) +
                         "\ncurvature_across_per_mm = " + std::to_string(across) +
