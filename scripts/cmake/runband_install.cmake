@@ -1,10 +1,11 @@
 # What `cmake --install` puts where:
 #   bin/runband                   the program (viewer/CMakeLists.txt makes it)
 #   lib/librunband.so             core
-#   lib/runband/plugins/          plugins (plugins/CMakeLists.txt)
+#   lib/runband/                  plugins (runband_plugin.cmake)
 #   include/runband/core/...      public headers, reached as #include "core/base/error.h"
 #   lib/cmake/runband/            find_package(runband COMPONENTS sdk)
 #   share/runband/                standards, demo and tables; found beside the library
+#   share/runband/sdk/            new_plugin, and what it copies
 #   share/doc/runband/            README, licence
 include(CMakePackageConfigHelpers)
 
@@ -30,7 +31,10 @@ configure_package_config_file(${PROJECT_SOURCE_DIR}/scripts/cmake/runbandConfig.
 write_basic_package_version_file(${PROJECT_BINARY_DIR}/runbandConfigVersion.cmake COMPATIBILITY SameMinorVersion)
 install(FILES ${PROJECT_BINARY_DIR}/runbandConfig.cmake ${PROJECT_BINARY_DIR}/runbandConfigVersion.cmake
   DESTINATION ${runband_package_dir})
-install(FILES ${PROJECT_SOURCE_DIR}/scripts/cmake/runband_plugin.cmake DESTINATION ${runband_package_dir} OPTIONAL)
+install(FILES ${PROJECT_SOURCE_DIR}/scripts/cmake/runband_plugin.cmake DESTINATION ${runband_package_dir})
 
 install(DIRECTORY ${PROJECT_SOURCE_DIR}/data/ DESTINATION ${CMAKE_INSTALL_DATADIR}/runband)
+install(PROGRAMS ${PROJECT_SOURCE_DIR}/scripts/new_plugin DESTINATION ${CMAKE_INSTALL_DATADIR}/runband/sdk)
+install(DIRECTORY ${PROJECT_SOURCE_DIR}/scripts/plugin DESTINATION ${CMAKE_INSTALL_DATADIR}/runband/sdk)
+install(FILES ${PROJECT_SOURCE_DIR}/plugins/README.md DESTINATION ${CMAKE_INSTALL_DOCDIR}/plugins)
 install(FILES ${PROJECT_SOURCE_DIR}/README.md ${PROJECT_SOURCE_DIR}/LICENSE DESTINATION ${CMAKE_INSTALL_DOCDIR})
