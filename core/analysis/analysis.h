@@ -86,6 +86,7 @@ struct PatchContext {
   const WheelsetPose& pose;
   const Locator* locator = nullptr;  ///< null on a bench
   Inputs inputs;
+  const std::vector<ContactZone>* zones = nullptr;  ///< of both wheels, `zone` among them; null on a bench
 };
 
 struct WheelsetContext {

@@ -9,7 +9,7 @@
 namespace runband {
 
 /// Counts up whenever a type or meaning in core/analysis changes.
-constexpr std::uint32_t kSdkVersion = 2;
+constexpr std::uint32_t kSdkVersion = 3;
 
 /// Plain data in a fixed order; every entry is compared for equality.
 struct PluginTag {

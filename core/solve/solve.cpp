@@ -102,12 +102,22 @@ Motion motion_of(const Case& c) {
 /// Every analysis of every loaded contact, then those of the wheelset as a whole.
 void run_analyses(Solution& solution, const AnalysisChoice& choice, const Progress& progress) {
   const Case& c = solution.asked;
+  std::vector<ContactZone> zones;
+  for (const Contact& contact : solution.contacts) zones.push_back(contact.zone);
   for (Contact& contact : solution.contacts) {
     if (!contact.patch) continue;
     progress.at(0.85, "analyses");
-    const PatchContext context{
-        contact.on_bench, contact.zone,  *contact.patch,         c.material, c.friction, motion_of(c),
-        c.creepage,       solution.pose, solution.locator.get(), {}};
+    const PatchContext context{contact.on_bench,
+                               contact.zone,
+                               *contact.patch,
+                               c.material,
+                               c.friction,
+                               motion_of(c),
+                               c.creepage,
+                               solution.pose,
+                               solution.locator.get(),
+                               {},
+                               c.bench ? nullptr : &zones};
     contact.analyses = choice.registry->run(context, choice.with, c.analyses, progress);
   }
   if (solution.locator) solution.analyses = analyses_of_wheelset(c, *solution.locator, solution.pose, choice, progress);
