@@ -242,6 +242,27 @@ void describe_spread(const SideGeometry& geometry, const SearchSpace& space, con
   }
 }
 
+// A wheel that stands on steep ground alone would slide off it unless something pushes it there.
+void describe_lateral_balance(Side side, double vertical, std::vector<ContactZone>& zones, std::size_t first) {
+  constexpr double kSteep_rad = 0.5;  // no tread is that steep
+  double lateral = 0.0, flattest = INFINITY;
+  for (std::size_t k = first; k < zones.size(); ++k) {
+    if (!zones[k].carries_load) continue;
+    flattest = std::min(flattest, std::abs(zones[k].contact_angle_rad));
+    lateral += zones[k].normal_force_N * std::sin(zones[k].contact_angle_rad);
+  }
+  if (!(flattest > kSteep_rad) || !std::isfinite(flattest)) return;
+  const std::string text = std::string("the ") + side_name(side) +
+                           " wheel stands on its flange alone, and its normal force follows from the " +
+                           "vertical load of " + number_text(vertical, 6) +
+                           " N only; without friction it would take a lateral force of " +
+                           number_text(std::abs(lateral), 3) +
+                           " N on that wheel to hold it there, which nothing here applies or checks. Judge the "
+                           "position by the lateral force.";
+  for (std::size_t k = first; k < zones.size(); ++k)
+    if (zones[k].carries_load) zones[k].cautions.push_back({"lateral_not_balanced", Severity::caution, text});
+}
+
 void describe_overlaps(std::vector<ContactZone>& zones) {
   for (std::size_t i = 0; i + 1 < zones.size(); ++i)
     for (std::size_t k = i + 1; k < zones.size(); ++k) {
@@ -285,6 +306,7 @@ Located Locator::loaded(double lateral_mm, double yaw_rad, LateralReference refe
     std::vector<ContactZone*> described;
     for (std::size_t k = first; k < located.zones.size(); ++k) described.push_back(&located.zones[k]);
     describe_spread(geometry, space, zones, displacement, described);
+    describe_lateral_balance(side, vertical, located.zones, first);
   }
   describe_overlaps(located.zones);
   return located;

@@ -1,4 +1,5 @@
 // Nadal's limit, and how much of it a contact uses.
+#include <algorithm>
 #include <cmath>
 #include <numbers>
 
@@ -12,6 +13,14 @@ double nadal(double angle_rad, double friction) {
   const double t = std::tan(angle_rad);
   return (t - friction) / (1 + friction * t);
 }
+
+/// d(Y/Q) / d(friction) of the above.
+double per_friction(double angle_rad, double friction) {
+  const double t = std::tan(angle_rad), below = 1 + friction * t;
+  return -(1 + t * t) / (below * below);
+}
+
+constexpr double kFlange_rad = 0.5;  // no tread is that steep
 
 class FlangeClimb final : public Analysis {
  public:
@@ -52,7 +61,34 @@ class FlangeClimb final : public Analysis {
                      nadal(angle, std::max(0.0, c.friction - p.number("friction_spread"))), from},
                     {"nadal_limit_high_friction", "Nadal's limit, friction higher by the spread", "1",
                      nadal(angle, c.friction + p.number("friction_spread")), from}};
-    if (limit > 0) r.quantities.push_back({"climb_limit_used", "Climb limit used", "1", ratio / limit, from});
+    const double low = std::max(0.0, c.friction - p.number("friction_spread")),
+                 high = c.friction + p.number("friction_spread");
+    r.quantities.push_back({"nadal_limit_per_friction", "Change of Nadal's limit with friction", "1",
+                            per_friction(angle, c.friction), from});
+    const auto used = [&](const char* name, const char* title, double at) {
+      if (at > 0) r.quantities.push_back({name, title, "1", ratio / at, from});
+    };
+    used("climb_limit_used", "Climb limit used", limit);
+    used("climb_limit_used_low_friction", "Climb limit used, friction lower by the spread", nadal(angle, low));
+    used("climb_limit_used_high_friction", "Climb limit used, friction higher by the spread", nadal(angle, high));
+    if (!c.on_bench && angle < kFlange_rad)
+      r.cautions.push_back({"not_on_the_flange", Severity::note,
+                            "This contact lies on the tread: Nadal's limit is meant for the flange, and for the forces "
+                            "of the whole wheel."});
+    Curve over_friction{"nadal_limit_over_friction",
+                        "Nadal's limit at this contact angle",
+                        "friction",
+                        "1",
+                        "Y/Q",
+                        "1",
+                        {},
+                        {},
+                        "Nadal 1908"};
+    for (int k = 0; k <= 16; ++k) {
+      over_friction.x.push_back(0.05 * k);
+      over_friction.y.push_back(nadal(angle, 0.05 * k));
+    }
+    r.curves.push_back(std::move(over_friction));
     Curve curve{"nadal_limit_over_angle", "Nadal's limit", "contact angle", "deg", "Y/Q", "1", {}, {}, from};
     for (int deg = 40; deg <= 80; ++deg) {
       curve.x.push_back(deg);

@@ -162,5 +162,30 @@ TEST(Loaded, RefusesALoadThatIsNotOne) {
   }
 }
 
+// On its flange alone, a wheel is held by a lateral force that nobody gave: said, with the number. Not while the tread
+// still carries.
+TEST(Loaded, FlangeAloneIsNotInLateralBalance) {
+  const Locator locate = s1002_on_60e1();
+  const auto cautioned = [](const Located& located) {
+    std::vector<const ContactZone*> zones;
+    for (const ContactZone& zone : located.zones)
+      for (const Caution& caution : zone.cautions)
+        if (caution.code == "lateral_not_balanced") zones.push_back(&zone);
+    return zones;
+  };
+  const Located flange = locate.loaded(6.35, 0.0, LateralReference::axle, {}, {});
+  const auto zones = cautioned(flange);
+  ASSERT_EQ(zones.size(), 1u);
+  EXPECT_EQ(zones.front()->side, Side::left);
+  EXPECT_GT(zones.front()->contact_angle_rad, 1.2);
+  // Q tan(delta), to the three digits of the sentence.
+  const double needed = 100000.0 * std::tan(zones.front()->contact_angle_rad);
+  const std::string& text = zones.front()->cautions.back().text;
+  EXPECT_NE(text.find("lateral force of "), std::string::npos) << text;
+  EXPECT_NEAR(std::stod(text.substr(text.find("lateral force of ") + 17)), needed, 0.005 * needed) << text;
+  for (const double y : {0.0, 3.0, 5.0, 5.5})
+    EXPECT_TRUE(cautioned(locate.loaded(y, 0.0, LateralReference::axle, {}, {})).empty()) << y;
+}
+
 }  // namespace
 }  // namespace runband

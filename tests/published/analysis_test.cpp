@@ -1,6 +1,7 @@
 // The analyses against published theory and independent computations, through solve().
 #include <gtest/gtest.h>
 
+#include <algorithm>
 #include <cmath>
 #include <numbers>
 
@@ -179,6 +180,31 @@ TEST(PublishedFlangeClimb, NadalsTable) {
     EXPECT_NEAR(at(c, 75), row.at_75, 1e-7);
     EXPECT_FALSE(r.cautions.empty());
   }
+}
+
+// The same table by friction, at the contact angle of a wheel on its flange: 70 degrees of S1002.
+TEST(PublishedFlangeClimb, FrictionSensitivityOnTheFlange) {
+  Case c = pairing("1:40");
+  c.state.lateral_mm = {6.35};
+  c.friction = 0.3;
+  const Solution s = solve(c, {}, {&installed_analyses(), {"flange_climb"}});
+  const auto flange = std::find_if(s.contacts.begin(), s.contacts.end(),
+                                   [](const Contact& k) { return k.patch && k.zone.contact_angle_rad > 1.0; });
+  ASSERT_NE(flange, s.contacts.end());
+  const auto& r = flange->analyses.at("flange_climb");
+  // The flank of 70 degrees leans with the wheelset's roll.
+  const double t = std::tan(flange->zone.contact_angle_rad);
+  EXPECT_NEAR(flange->zone.contact_angle_rad, 70 * std::numbers::pi / 180 + s.pose.roll_rad, 1e-4);
+  for (const double friction : {0.1, 0.2, 0.3, 0.4, 0.5, 0.6})
+    EXPECT_NEAR(at(curve(r, "nadal_limit_over_friction"), friction), (t - friction) / (1 + friction * t), 1e-12);
+  EXPECT_NEAR(quantity(r, "nadal_limit"), 1.3416399, 0.02);
+  EXPECT_NEAR(quantity(r, "nadal_limit_low_friction"), 1.644069, 0.03);
+  EXPECT_NEAR(quantity(r, "nadal_limit_high_friction"), 1.1183838, 0.02);
+  EXPECT_NEAR(quantity(r, "nadal_limit_per_friction"),
+              ((t - 0.3001) / (1 + 0.3001 * t) - (t - 0.2999) / (1 + 0.2999 * t)) / 2e-4, 1e-6);
+  EXPECT_NEAR(quantity(r, "climb_limit_used"), quantity(r, "lateral_over_vertical") / quantity(r, "nadal_limit"),
+              1e-12);
+  EXPECT_GT(quantity(r, "climb_limit_used_high_friction"), quantity(r, "climb_limit_used_low_friction"));
 }
 
 TEST(PublishedCreepage, SignsAndSizesOfACentredWheelset) {
