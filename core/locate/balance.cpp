@@ -250,7 +250,7 @@ bool Balance::follow(double& roll, std::array<double, 2>& t, const std::array<bo
     if (in_place && level && (request_.reference == LateralReference::axle || change < 1e-13)) return true;
     roll += std::clamp(-f / trial.slope(), -kLongestStep_rad, kLongestStep_rad);
     if (std::abs(roll) > kMostRoll_rad) return false;
-    for (const std::size_t k : {0, 1}) t[k] += step[k];
+    for (const std::size_t k : {0u, 1u}) t[k] += step[k];
   }
   return false;
 }
@@ -310,7 +310,7 @@ Settled settle_near(const LocatorTables& tables, const RigidRequest& request, co
   const double moved = request.lateral - neighbour.contact.pose.lateral_mm;
   double roll = neighbour.contact.pose.roll_rad + neighbour.roll_rate * moved;
   std::array<double, 2> t = neighbour.t;
-  for (const std::size_t k : {0, 1})
+  for (const std::size_t k : {0u, 1u})
     if (const double ahead = neighbour.t_rate[k] * moved; std::abs(ahead) < kLongestSlide_mm) t[k] += ahead;
   std::array<bool, 2> pinned = neighbour.pinned;
   RigidTrial trial;
@@ -325,7 +325,7 @@ Settled settle_near(const LocatorTables& tables, const RigidRequest& request, co
       settled.margin_mm = margin;
       return settled;
     }
-    for (const std::size_t k : {0, 1}) {
+    for (const std::size_t k : {0u, 1u}) {
       if (t[k] == trial.touch[k].t) continue;
       t[k] = trial.touch[k].t;
       pinned[k] = false;

@@ -142,7 +142,7 @@ TEST(Rigid, RatesAreTheSlopesOfTheRollingRadii) {
       for (const double y : {-5.6, -3.1, 0.1, 1.7, 4.4, 6.31}) {
         const RigidContact at = locate.rigid(y, yaw, reference), before = locate.rigid(y - kStep_mm, yaw, reference),
                            after = locate.rigid(y + kStep_mm, yaw, reference);
-        for (const std::size_t k : {0, 1}) {
+        for (const std::size_t k : {0u, 1u}) {
           const double slope = (after.touch[k].rolling_radius_mm - before.touch[k].rolling_radius_mm) / (2 * kStep_mm);
           // Yaw bends the locus a little differently from the profile.
           EXPECT_NEAR(at.touch[k].rolling_radius_rate, slope, (yaw == 0.0 ? 1e-3 : 0.05) * (0.01 + std::abs(slope)))
@@ -160,7 +160,7 @@ TEST(Rigid, SweepIsDenseEnoughToInterpolate) {
     const double h = b.pose.lateral_mm - a.pose.lateral_mm;
     if (h < 1e-5) continue;
     const RigidContact middle = locate.rigid(a.pose.lateral_mm + 0.5 * h, 0.0);
-    for (const std::size_t k : {0, 1}) {
+    for (const std::size_t k : {0u, 1u}) {
       const double cubic = 0.5 * (a.touch[k].rolling_radius_mm + b.touch[k].rolling_radius_mm) +
                            0.125 * h * (a.touch[k].rolling_radius_rate - b.touch[k].rolling_radius_rate);
       EXPECT_NEAR(middle.touch[k].rolling_radius_mm, cubic, 1e-3) << a.pose.lateral_mm;
