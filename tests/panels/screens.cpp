@@ -62,7 +62,7 @@ int main(int argc, char** argv) {
         user.key(Key::slash, kShift);
         keep(user, folder / (stem + "_keys.png"));
         user.key(Key::escape);
-        user.key(Key::o, kCtrl);
+        user.desk.ask(Prompt::Kind::open);
         keep(user, folder / (stem + "_open.png"));
       }
     }

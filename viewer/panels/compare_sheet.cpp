@@ -120,17 +120,16 @@ void Frame::draw_compare_sheet(const plot::Box& box) {
                            box.height - ui_.px(44) - table_height - bar_height};
   const int count = (view.compare_overlaid ? 1 : 2) + (view.compare_difference ? 1 : 0);
   const double cell = pictures.width / count;
-  const double radius = std::max(ui_.px(30), std::min(cell * 0.46, pictures.height * 0.46));
+  const double radius = std::max(ui_.px(30), std::min(cell * 0.46, pictures.height * 0.5 - ui_.px(18)));
   const double scale = radius / (1.2 * half);
   int slot = 0;
   {
     ScreenCanvas canvas = ui_.canvas();
     const auto centre = [&](int k) {
-      return plot::Point{pictures.x + cell * (k + 0.5), pictures.y + pictures.height * 0.5 + ui_.px(6)};
+      return plot::Point{pictures.x + cell * (k + 0.5), pictures.y + pictures.height * 0.5 + ui_.px(8)};
     };
     const auto caption = [&](plot::Point c, const std::string& words) {
-      canvas.text({c.x - radius * 0.98, c.y - radius * 0.88}, words, ui_.body_font(true), theme.ink,
-                  plot::Anchor::start, 0);
+      canvas.text({c.x, c.y - radius - ui_.px(8)}, words, ui_.body_font(true), theme.ink, plot::Anchor::middle, 0);
     };
     const auto subject = [&](int k) {
       DetailSubject s = detail_subject(desk_, *contacts[k], shown[k]);

@@ -222,9 +222,15 @@ DetailPlace draw_detail_view(const DetailSubject& subject, Point centre, double 
         else
           for (const Point& p : line)
             canvas.line(plot::circle(p, 0.9 * style.mm), {theme.accent, style.bold, plot::Dash::solid}, true);
-        if (!named)
-          canvas.text({line.back().x, line.back().y - 1.2 * style.mm}, "pure rolling", style.small(), theme.accent,
-                      plot::Anchor::end, 0);
+        if (!named) {
+          // Outside the patch, where the line ends.
+          const Point end = line.front().x > line.back().x ? line.front() : line.back();
+          const double width = canvas.measure("rolling", style.small()).width;
+          if (place.contains({end.x + width + 1.5 * style.mm, end.y + style.small_text})) {
+            canvas.text({end.x + 1.2 * style.mm, end.y - 0.2 * style.mm}, "pure", style.small(), theme.accent, plot::Anchor::start, 0);
+            canvas.text({end.x + 1.2 * style.mm, end.y + style.small_text}, "rolling", style.small(), theme.accent, plot::Anchor::start, 0);
+          }
+        }
         named = true;
       }
     }
@@ -272,40 +278,43 @@ void draw_relief(const DetailSubject& subject, Point centre, double radius, doub
                  ? std::clamp((value[k] - subject.range.low) / subject.range.span(), 0.0, 1.2)
                  : 0.0;
     };
-    // Heights at the cells' corners: the mean of the cells around.
-    const auto corner = [&](int i, int j) {
-      return (level(i, j) + level(i - 1, j) + level(i, j - 1) + level(i - 1, j - 1)) / 4;
-    };
     const auto project = [&](double x, double s, double z) {
       const double u = ct * x - st * s, v = st * x + ct * s;
       return Point{centre.x + u * scale, centre.y + 0.22 * radius - v * scale * si - z * height * ci};
     };
+    // A surface through the cells' middles; around the patch it reaches the ground. At most some 48 pieces along a
+    // side: finer is not seen.
+    const int stride = std::max(1, std::max(g.nx, g.ns) / 48);
     struct Piece {
       double far;
       int i, j;
     };
     std::vector<Piece> pieces;
-    // At most 48 pieces along a side: finer is not seen.
-    const int stride = std::max(1, std::max(g.nx, g.ns) / 48);
-    for (int j = 0; j < g.ns; j += stride)
-      for (int i = 0; i < g.nx; i += stride)
-        if (contact.patch->pressure.values[static_cast<std::size_t>(j * g.nx + i)] > 0)
+    for (int j = -stride; j < g.ns; j += stride)
+      for (int i = -stride; i < g.nx; i += stride)
+        if (level(i, j) > 0 || level(i + stride, j) > 0 || level(i, j + stride) > 0 || level(i + stride, j + stride) > 0)
           pieces.push_back({st * g.x(i) + ct * g.s(j), i, j});
     std::sort(pieces.begin(), pieces.end(), [](const Piece& a, const Piece& b) { return a.far > b.far; });
+    const auto colour_at_cell = [&](int i, int j) -> std::optional<plot::Colour> {
+      if (i < 0 || j < 0 || i >= g.nx || j >= g.ns) return std::nullopt;
+      const double v = map.values[static_cast<std::size_t>(j * g.nx + i)];
+      if (std::isnan(v)) return std::nullopt;
+      if (!map.inks.empty()) return map.inks[static_cast<std::size_t>(std::max(0.0, v)) % map.inks.size()];
+      return plot::colour_at(map.map, (v - map.range.low) / map.range.span());
+    };
     for (const Piece& piece : pieces) {
       const int i = piece.i, j = piece.j;
-      const double x0 = g.x(i) - g.dx_mm / 2, x1 = x0 + stride * g.dx_mm, s0 = g.s(j) - g.ds_mm / 2,
-                   s1 = s0 + stride * g.ds_mm;
-      const Point quad[] = {project(x0, s0, corner(i, j)), project(x1, s0, corner(i + stride, j)),
-                            project(x1, s1, corner(i + stride, j + stride)), project(x0, s1, corner(i, j + stride))};
-      const double v = map.values[static_cast<std::size_t>(j * g.nx + i)];
-      plot::Colour colour = map.inks.empty() ? plot::colour_at(map.map, (v - map.range.low) / map.range.span())
-                                             : map.inks[static_cast<std::size_t>(std::max(0.0, v)) % map.inks.size()];
+      const double z00 = level(i, j), z10 = level(i + stride, j), z11 = level(i + stride, j + stride), z01 = level(i, j + stride);
+      const Point quad[] = {project(g.x(i), g.s(j), z00), project(g.x(i + stride), g.s(j), z10),
+                            project(g.x(i + stride), g.s(j + stride), z11), project(g.x(i), g.s(j + stride), z01)};
+      std::optional<plot::Colour> colour;
+      for (const auto& [a, b] : {std::pair{i, j}, {i + stride, j}, {i + stride, j + stride}, {i, j + stride}})
+        if (!colour) colour = colour_at_cell(a, b);
+      if (!colour) continue;
       // Light from the upper left: slopes that face it are a little brighter.
-      const double slope = (corner(i + stride, j) - corner(i, j)) * ct - (corner(i, j + stride) - corner(i, j)) * st;
-      colour = plot::mix(colour, slope < 0 ? plot::Colour{0, 0, 0, 1} : plot::Colour{1, 1, 1, 1},
-                         std::min(0.18, std::abs(slope) * 1.6));
-      canvas.polygon(quad, colour);
+      const double slope = (z10 - z00) * ct - (z01 - z00) * st;
+      canvas.polygon(quad, plot::mix(*colour, slope < 0 ? plot::Colour{0, 0, 0, 1} : plot::Colour{1, 1, 1, 1},
+                                     std::min(0.18, std::abs(slope) * 1.6)));
     }
     // The rolling direction lies on the ground.
     const Point a = project(-half * 1.1, 0, 0), b = project(half * 1.22, 0, 0);

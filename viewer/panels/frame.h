@@ -37,6 +37,8 @@ class Frame {
 
   /// One turn of the loop. @return seconds that the loop may sleep until the next
   double step();
+  /// Something changed that came neither by an event nor from the solver.
+  void refresh() { needs_frame_ = true; }
   /// Steps until nothing waits: no events, no answers to come, the settled picture drawn.
   void settle(int most = 2000);
 

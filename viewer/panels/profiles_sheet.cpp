@@ -75,17 +75,9 @@ void Frame::draw_profiles_sheet(const plot::Box& box) {
       dot.size = 1.8;
       section.points.push_back(std::move(dot));
       if (each.zone.carries_load)
-        section.notes.push_back({std::abs(each.zone.track_mm.y()),
-                                 each.zone.track_mm.z(),
-                                 each.zone.zone + ", " + plot::number(each.zone.normal_force_N * 1e-3, 0) +
-                                     "\u2009kN, " +
-                                     plot::number(each.zone.contact_angle_rad * 180 / std::numbers::pi, 1) + "°",
-                                 {plot::Ink::warning, 1, {}},
-                                 plot::Anchor::middle,
-                                 0,
-                                 -9,
-                                 true,
-                                 true});
+        section.caption += (section.caption.empty() ? "" : "; ") + each.zone.zone + ", " +
+                           plot::number(each.zone.normal_force_N * 1e-3, 0) + "\u2009kN, " +
+                           plot::number(each.zone.contact_angle_rad * 180 / std::numbers::pi, 1) + "°";
     }
     // Where a profile has a problem, the place is marked on the drawing.
     const auto findings = [&](const Profile& profile) {

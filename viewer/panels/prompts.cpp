@@ -212,7 +212,7 @@ void Frame::draw_prompts() {
       break;
     }
     case Prompt::Kind::about: {
-      ui_.begin_sheet("about", 520, 300);
+      ui_.begin_sheet("about", 520, 250);
       ui_.words(std::string("Runband ") + version(), ui_.title_font(), theme.ink);
       ui_.paragraph("Where a wheelset touches the track, how hard, and what the touch does.", ui_.body_font(),
                     theme.ink);
@@ -281,7 +281,7 @@ void Frame::draw_prompts() {
     case Prompt::Kind::save_as:
     case Prompt::Kind::keep_picture: {
       const bool picture = prompt.kind == Prompt::Kind::keep_picture;
-      ui_.begin_sheet("save", 560, 250);
+      ui_.begin_sheet("save", 560, prompt.problem.empty() ? 178 : 260);
       ui_.words(picture ? "Keep this picture" : "Save the case", ui_.title_font(), theme.ink);
       ui_.space(2);
       ui_.paragraph(picture ? "PNG. It carries the case, so that it can be opened again."
@@ -324,7 +324,7 @@ void Frame::draw_prompts() {
       break;
     }
     case Prompt::Kind::unsaved: {
-      ui_.begin_sheet("unsaved", 480, 200);
+      ui_.begin_sheet("unsaved", 480, prompt.problem.empty() ? 138 : 210);
       ui_.words("The case is not saved", ui_.title_font(), theme.ink);
       ui_.paragraph("What was changed in \u201C" + desk_.now().document.name() + "\u201D would be lost.",
                     ui_.body_font(), theme.ink);

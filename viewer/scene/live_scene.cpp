@@ -268,8 +268,8 @@ void LiveScene::look_from(NamedView view) {
     case NamedView::home: {
       // From ahead, above, and a little from the middle of the track; the contact a little right of the middle, so that
       // there is room for the detail view.
-      const Vec3 focus = at + Vec3(40, sign * 105, 62);
-      p.aim_at(focus, focus + Vec3(640, -sign * 390, 400), up);
+      const Vec3 focus = at + Vec3(48, sign * 52, 34);
+      p.aim_at(focus, focus + Vec3(410, -sign * 235, 235), up);
       break;
     }
     case NamedView::front:

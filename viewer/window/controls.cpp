@@ -300,7 +300,9 @@ bool Ui::choice(const std::string& id, const std::string& name, const std::vecto
       row_y += row_height;
     }
     ImGui::SetCursorScreenPos(at(box.x, row_y + px(5)));
-    const bool outside = ImGui::IsMouseClicked(ImGuiMouseButton_Left) && !ImGui::IsWindowHovered() && !it.hovered;
+    const ImVec2 mouse = ImGui::GetIO().MousePos;
+    const bool outside = ImGui::IsMouseClicked(ImGuiMouseButton_Left) && !it.hovered &&
+                         !box.contains({static_cast<double>(mouse.x), static_cast<double>(mouse.y)});
     ImGui::End();
     if (outside) open_choice_.clear();
   } else {
@@ -356,7 +358,7 @@ Change Ui::text_field(const std::string& id, std::string& text, const std::strin
 }
 
 Grip Ui::grip(const std::string& id, const plot::Box& box, bool focusable) {
-  const Item it = item(id, box, focusable);
+  const Item it = item(id, box, focusable, true);
   const ImGuiIO& io = ImGui::GetIO();
   Grip grip;
   grip.hovered = it.hovered;

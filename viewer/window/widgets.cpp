@@ -149,12 +149,14 @@ bool Ui::hovers(const plot::Box& box) const {
 
 // ---- The one thing every control is
 
-Ui::Item Ui::item(const std::string& id, const plot::Box& box, bool focusable) {
+Ui::Item Ui::item(const std::string& id, const plot::Box& box, bool focusable, bool beneath) {
   Item it;
   places_[id] = box;
   if (focusable) order_.push_back(id);
   ImGui::SetCursorScreenPos(at(box.x, box.y));
-  it.clicked = ImGui::InvisibleButton(id.c_str(), at(std::max(1.0, box.width), std::max(1.0, box.height)));
+  it.clicked = ImGui::InvisibleButton(id.c_str(), at(std::max(1.0, box.width), std::max(1.0, box.height)),
+                                      beneath ? static_cast<ImGuiButtonFlags>(ImGuiButtonFlags_AllowItemOverlap) : 0);
+  if (beneath) ImGui::SetItemAllowOverlap();
   it.hovered = ImGui::IsItemHovered();
   it.held = ImGui::IsItemActive();
   it.pressed = ImGui::IsItemActivated();

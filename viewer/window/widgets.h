@@ -98,6 +98,7 @@ class Ui {
   bool tabs(const std::string& id, plot::Point baseline, const std::vector<std::string>& names, int& chosen);
   /// @return done on Enter or when left changed
   Change text_field(const std::string& id, std::string& text, const std::string& hint, bool focus = false);
+  /// What is laid out over it later takes the pointer first.
   Grip grip(const std::string& id, const plot::Box& box, bool focusable = false);
   /// A divider that can be dragged; `size` is what stands before (or, if `inverse`, after) it in layout units.
   bool splitter(const std::string& id, const plot::Box& box, bool across, bool inverse, double& size, double least,
@@ -125,7 +126,7 @@ class Ui {
     bool hovered = false, pressed = false, clicked = false, held = false, entered = false, released = false;
     int step = 0;  ///< left and right keys while focused
   };
-  Item item(const std::string& id, const plot::Box& box, bool focusable);
+  Item item(const std::string& id, const plot::Box& box, bool focusable, bool beneath = false);
   void ring(const plot::Box& box);
   void help_for(const Item& it, const std::string& help);
   Change typed(const std::string& id, const plot::Box& box, double& value, const plot::Range& range, int decimals);
