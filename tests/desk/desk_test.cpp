@@ -112,7 +112,8 @@ TEST(Desk, WhatACrashLeftIsOfferedAtTheNextStart) {
   const auto state = fresh_folder("crash");
   std::filesystem::create_directories(state / "kept");
   // A process that is gone: its number is beyond the largest that Linux gives.
-  write_file(state / "kept" / "99999999-0.json", std::string("{\"case\": \"title = \\\"lost\\\"\\n\", \"folder\": \"/\", \"file\": \"\"}"));
+  write_file(state / "kept" / "99999999-0.json",
+             std::string("{\"case\": \"title = \\\"lost\\\"\\n\", \"folder\": \"/\", \"file\": \"\"}"));
   Desk desk({state, &installed_analyses(), {}});
   ASSERT_EQ(desk.recoverable.size(), 1U);
   EXPECT_EQ(desk.prompt.kind, Prompt::Kind::recover);

@@ -327,9 +327,9 @@ TEST(Files, FromLaunchToAKeptPictureInThreeActionsAndThePictureOpensAgain) {
   const auto before = std::filesystem::current_path();
   std::filesystem::current_path(folder);
   Driver user;
-  user.open("curve12.toml");    // 1: start
-  user.key(Key::e, kCtrl);      // 2: keep this picture
-  user.key(Key::enter);         // 3: under the name that is offered
+  user.open("curve12.toml");  // 1: start
+  user.key(Key::e, kCtrl);    // 2: keep this picture
+  user.key(Key::enter);       // 3: under the name that is offered
   std::filesystem::current_path(before);
   std::vector<std::filesystem::path> made;
   for (const auto& entry : std::filesystem::directory_iterator(folder)) made.push_back(entry.path());

@@ -1,12 +1,12 @@
 // Robustness: random events by the thousand, a plugin that throws in every call, long use in steady memory.
 #include <gtest/gtest.h>
+#include <unistd.h>
 
 #include <cstdio>
 #include <cstdlib>
 #include <filesystem>
 #include <fstream>
 #include <random>
-#include <unistd.h>
 
 #include "tests/panels/driver.h"
 
@@ -65,7 +65,9 @@ void random_event(Driver& user, std::mt19937& random) {
       const auto ids = user.frame.ui().ids();
       if (ids.empty()) break;
       const std::string& id = ids[static_cast<std::size_t>(any(static_cast<int>(ids.size())))];
-      if (id.starts_with("save/") || id.starts_with("unsaved/save") || id.starts_with("open/list") || id.starts_with("profile/list")) break;
+      if (id.starts_with("save/") || id.starts_with("unsaved/save") || id.starts_with("open/list") ||
+          id.starts_with("profile/list"))
+        break;
       const plot::Point at = user.frame.ui().where(id)->centre();
       user.host.move(at.x, at.y);
       user.host.press(MouseButton::left, true);

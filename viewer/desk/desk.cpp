@@ -131,6 +131,7 @@ void Desk::edit(const std::string& what, const std::string& merge, const std::fu
                      steps_[at_ - 1].slot == active_ && steps_[at_ - 1].merge == merge;
   if (!joins) document.end_gesture();
   if (!document.edit(what, merge, change)) return;
+  ask_solver(active_);  // at once, not with the next frame
   if (!joins) push({active_, what, merge, {}, {}});
   gesture_over_ = merge.empty();
 }

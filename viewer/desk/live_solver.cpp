@@ -11,6 +11,7 @@ namespace runband {
 namespace {
 
 constexpr double kReach_mm = 12, kStep_mm = 0.1;
+constexpr std::chrono::milliseconds kStill{60};  // so long a state must stand before its analyses begin
 
 /// What prepare() depends on, as one text.
 std::string geometry_key(const Case& c) {
@@ -79,7 +80,10 @@ struct LiveSolver::Prepared {
 };
 
 LiveSolver::LiveSolver(const AnalysisRegistry& registry, std::function<void()> wake)
-    : registry_(registry), wake_(std::move(wake)), worker_([this](const std::stop_token& stop) { work(stop); }) {}
+    : registry_(registry),
+      wake_(std::move(wake)),
+      worker_([this](const std::stop_token& stop) { work(stop); }),
+      later_worker_([this](const std::stop_token& stop) { work_later(stop); }) {}
 
 LiveSolver::~LiveSolver() {
   {
@@ -88,6 +92,7 @@ LiveSolver::~LiveSolver() {
     later_.request_stop();
   }
   worker_.request_stop();
+  later_worker_.request_stop();
   changed_.notify_all();
 }
 
@@ -97,7 +102,8 @@ std::uint64_t LiveSolver::ask(int slot, Case asked, std::vector<std::string> wit
   // A question that was not begun yet keeps its place in time: the wait counts from the first move not yet answered.
   if (waiting_[slot]) question.asked_at = waiting_[slot]->asked_at;
   waiting_[slot] = std::move(question);
-  if (solving_ == slot) later_.request_stop();
+  postponed_[slot].reset();
+  if (completing_ == slot) later_.request_stop();
   changed_.notify_all();
   return revisions_;
 }
@@ -107,23 +113,26 @@ std::vector<Answer> LiveSolver::take() {
   return std::exchange(answers_, {});
 }
 
+bool LiveSolver::busy_now(int slot) const {
+  return waiting_[slot].has_value() || solving_ == slot || postponed_[slot].has_value() || completing_ == slot;
+}
+
 bool LiveSolver::busy(int slot) const {
   const std::lock_guard lock(mutex_);
-  return waiting_[slot].has_value() || solving_ == slot;
+  return busy_now(slot);
 }
 
 void LiveSolver::cancel(int slot) {
   const std::lock_guard lock(mutex_);
   waiting_[slot].reset();
-  if (solving_ == slot) {
-    all_.request_stop();
-    later_.request_stop();
-  }
+  postponed_[slot].reset();
+  if (solving_ == slot) all_.request_stop();
+  if (completing_ == slot) later_.request_stop();
 }
 
 std::optional<LiveSolver::Doing> LiveSolver::doing() const {
   const std::lock_guard lock(mutex_);
-  if (!solving_) return std::nullopt;
+  if (!solving_ && !completing_) return std::nullopt;
   Doing doing = doing_;
   doing.for_s = std::chrono::duration<double>(std::chrono::steady_clock::now() - began_).count();
   return doing;
@@ -131,7 +140,7 @@ std::optional<LiveSolver::Doing> LiveSolver::doing() const {
 
 void LiveSolver::wait() const {
   std::unique_lock lock(mutex_);
-  changed_.wait(lock, [this] { return !solving_ && !waiting_[0] && !waiting_[1]; });
+  changed_.wait(lock, [this] { return !busy_now(0) && !busy_now(1); });
 }
 
 bool LiveSolver::newer(int slot, std::uint64_t revision) const {
@@ -160,12 +169,11 @@ void LiveSolver::work(const std::stop_token& stop) {
       question = std::move(*waiting_[slot]);
       waiting_[slot].reset();
       solving_ = slot;
-      later_ = std::stop_source();
       all_ = std::stop_source();
       doing_ = {};
       began_ = std::chrono::steady_clock::now();
     }
-    answer(slot, question, stop);
+    answer(slot, question);
     {
       const std::lock_guard lock(mutex_);
       solving_.reset();
@@ -175,28 +183,94 @@ void LiveSolver::work(const std::stop_token& stop) {
   }
 }
 
-void LiveSolver::answer(int slot, const Question& question, const std::stop_token&) {
+void LiveSolver::work_later(const std::stop_token& stop) {
+  while (!stop.stop_requested()) {
+    Later job;
+    {
+      std::unique_lock lock(mutex_);
+      changed_.wait(lock, stop, [this] { return postponed_[0].has_value() || postponed_[1].has_value(); });
+      if (stop.stop_requested()) return;
+      const int slot =
+          !postponed_[0] || (postponed_[1] && postponed_[1]->not_before < postponed_[0]->not_before) ? 1 : 0;
+      const auto when = postponed_[slot]->not_before;
+      if (std::chrono::steady_clock::now() < when) {
+        changed_.wait_until(lock, stop, when, [] { return false; });
+        continue;
+      }
+      job = std::move(*postponed_[slot]);
+      postponed_[slot].reset();
+      completing_ = slot;
+      later_ = std::stop_source();
+      doing_ = {};
+      began_ = std::chrono::steady_clock::now();
+    }
+    answer_later(job);
+    {
+      const std::lock_guard lock(mutex_);
+      completing_.reset();
+    }
+    changed_.notify_all();
+    if (wake_) wake_();
+  }
+}
+
+Progress LiveSolver::progress_of(const std::stop_token& stop) {
+  return {[this](double fraction, std::string_view what) {
+            const std::lock_guard lock(mutex_);
+            doing_.fraction = fraction;
+            doing_.what = what;
+          },
+          stop};
+}
+
+void LiveSolver::leave_for_later(int slot, const Question& question, std::shared_ptr<const Locator> locator) {
+  {
+    const std::lock_guard lock(mutex_);
+    if (waiting_[slot] && waiting_[slot]->revision > question.revision) return;
+    postponed_[slot] = Later{slot, question, std::move(locator), std::chrono::steady_clock::now() + kStill};
+  }
+  changed_.notify_all();
+}
+
+void LiveSolver::answer_later(const Later& job) {
+  Answer answer;
+  answer.slot = job.slot;
+  answer.revision = job.question.revision;
+  answer.asked_at = job.question.asked_at;
+  answer.stage = Answer::Stage::whole;
+  std::stop_token stop;
+  {
+    const std::lock_guard lock(mutex_);
+    stop = later_.get_token();
+  }
+  try {
+    answer.solution = std::make_shared<const Solution>(
+        solve(job.question.asked, job.locator, progress_of(stop), {&registry_, job.question.with}));
+    if (!stop.stop_requested()) deliver(std::move(answer));
+  } catch (const Cancelled&) {
+    // A newer question came, or the user stopped this one.
+  } catch (const std::exception& problem) {
+    answer.failure = failure_of(problem);
+    deliver(std::move(answer));
+  }
+}
+
+void LiveSolver::answer(int slot, const Question& question) {
   const Case& c = question.asked;
   Answer answer;
   answer.slot = slot;
   answer.revision = question.revision;
   answer.asked_at = question.asked_at;
-  std::stop_token all, later;
+  std::stop_token all;
   {
     const std::lock_guard lock(mutex_);
     all = all_.get_token();
-    later = later_.get_token();
   }
-  const auto report = [this](double fraction, std::string_view what) {
-    const std::lock_guard lock(mutex_);
-    doing_.fraction = fraction;
-    doing_.what = what;
-  };
   try {
     std::unique_ptr<Prepared>& prepared = prepared_[slot];
     const std::string key = geometry_key(c);
     if (!prepared || prepared->key != key) {
-      report(0, "reading profiles");
+      progress_of(all).at(0, "reading profiles");
       prepared.reset();
       auto made = std::make_unique<Prepared>();
       made->key = key;
@@ -217,7 +291,7 @@ void LiveSolver::answer(int slot, const Question& question, const std::stop_toke
       first = {&kNone, {}};
       bare.analyses.clear();
     }
-    Solution quick = solve(bare, prepared->locator, {report, all}, first);
+    Solution quick = solve(bare, prepared->locator, progress_of(all), first);
     quick.asked = c;
     answer.stage = Answer::Stage::first;
     answer.solution = std::make_shared<const Solution>(std::move(quick));
@@ -233,16 +307,13 @@ void LiveSolver::answer(int slot, const Question& question, const std::stop_toke
       curves.solution.reset();
       const auto positions = traverse_positions(*prepared->locator, yaw, c.state.reference, kReach_mm, kStep_mm);
       curves.traverse = std::make_shared<const Traverse>(
-          traverse(moved, prepared->locator, positions, {report, later}, {&kNone, {}}));
+          traverse(moved, prepared->locator, positions, progress_of(all), {&kNone, {}}));
       prepared->traverse_key = traverse_key(c);
       deliver(std::move(curves));
       if (newer(slot, question.revision)) return;
     }
 
-    answer.stage = Answer::Stage::whole;
-    answer.solution =
-        std::make_shared<const Solution>(solve(c, prepared->locator, {report, later}, {&registry_, question.with}));
-    deliver(answer);
+    leave_for_later(slot, question, prepared->locator);
   } catch (const Cancelled&) {
     // A newer question waits, or the user stopped this one.
   } catch (const std::exception& problem) {

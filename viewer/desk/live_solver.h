@@ -35,7 +35,8 @@ struct Answer {
   double latency_ms() const { return std::chrono::duration<double, std::milli>(done_at - asked_at).count(); }
 };
 
-/// One worker thread. Every call is made from the owner's thread.
+/// Two worker threads: one gives first answers and traverses, so that a drag is never behind an analysis; the other, once
+/// the state has been still for a moment, the whole. Every call is made from the owner's thread.
 class LiveSolver {
  public:
   /// @param wake called from the worker after each answer; may be empty.
@@ -70,9 +71,20 @@ class LiveSolver {
     std::chrono::steady_clock::time_point asked_at;
   };
   struct Prepared;
+  struct Later {
+    int slot = 0;
+    Question question;
+    std::shared_ptr<const Locator> locator;
+    std::chrono::steady_clock::time_point not_before;
+  };
   void work(const std::stop_token& stop);
-  void answer(int slot, const Question& question, const std::stop_token& stop);
+  void work_later(const std::stop_token& stop);
+  void answer(int slot, const Question& question);
+  void answer_later(const Later& job);
+  void leave_for_later(int slot, const Question& question, std::shared_ptr<const Locator> locator);
+  Progress progress_of(const std::stop_token& stop);
   bool newer(int slot, std::uint64_t revision) const;
+  bool busy_now(int slot) const;
   void deliver(Answer answer);
 
   const AnalysisRegistry& registry_;
@@ -81,14 +93,16 @@ class LiveSolver {
   mutable std::condition_variable_any changed_;
   std::optional<Question> waiting_[kSlots];
   std::optional<int> solving_;
-  std::stop_source later_;  ///< stops the second half of an answer when a newer question comes
-  std::stop_source all_;    ///< stops an answer altogether
+  std::optional<Later> postponed_[kSlots];
+  std::optional<int> completing_;
+  std::stop_source later_;  ///< stops the whole answer, and a traverse, when a newer question comes
+  std::stop_source all_;    ///< stops a first answer: when the user says so
   std::vector<Answer> answers_;
   std::uint64_t revisions_ = 0;
   Doing doing_;
   std::chrono::steady_clock::time_point began_;
   std::unique_ptr<Prepared> prepared_[kSlots];
-  std::jthread worker_;
+  std::jthread worker_, later_worker_;
 };
 
 /// The widest traverse that has rigid contact on both sides, at most +-reach, symmetric as far as it can be.

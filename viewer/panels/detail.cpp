@@ -227,8 +227,10 @@ DetailPlace draw_detail_view(const DetailSubject& subject, Point centre, double 
           const Point end = line.front().x > line.back().x ? line.front() : line.back();
           const double width = canvas.measure("rolling", style.small()).width;
           if (place.contains({end.x + width + 1.5 * style.mm, end.y + style.small_text})) {
-            canvas.text({end.x + 1.2 * style.mm, end.y - 0.2 * style.mm}, "pure", style.small(), theme.accent, plot::Anchor::start, 0);
-            canvas.text({end.x + 1.2 * style.mm, end.y + style.small_text}, "rolling", style.small(), theme.accent, plot::Anchor::start, 0);
+            canvas.text({end.x + 1.2 * style.mm, end.y - 0.2 * style.mm}, "pure", style.small(), theme.accent,
+                        plot::Anchor::start, 0);
+            canvas.text({end.x + 1.2 * style.mm, end.y + style.small_text}, "rolling", style.small(), theme.accent,
+                        plot::Anchor::start, 0);
           }
         }
         named = true;
@@ -292,7 +294,8 @@ void draw_relief(const DetailSubject& subject, Point centre, double radius, doub
     std::vector<Piece> pieces;
     for (int j = -stride; j < g.ns; j += stride)
       for (int i = -stride; i < g.nx; i += stride)
-        if (level(i, j) > 0 || level(i + stride, j) > 0 || level(i, j + stride) > 0 || level(i + stride, j + stride) > 0)
+        if (level(i, j) > 0 || level(i + stride, j) > 0 || level(i, j + stride) > 0 ||
+            level(i + stride, j + stride) > 0)
           pieces.push_back({st * g.x(i) + ct * g.s(j), i, j});
     std::sort(pieces.begin(), pieces.end(), [](const Piece& a, const Piece& b) { return a.far > b.far; });
     const auto colour_at_cell = [&](int i, int j) -> std::optional<plot::Colour> {
@@ -304,7 +307,8 @@ void draw_relief(const DetailSubject& subject, Point centre, double radius, doub
     };
     for (const Piece& piece : pieces) {
       const int i = piece.i, j = piece.j;
-      const double z00 = level(i, j), z10 = level(i + stride, j), z11 = level(i + stride, j + stride), z01 = level(i, j + stride);
+      const double z00 = level(i, j), z10 = level(i + stride, j), z11 = level(i + stride, j + stride),
+                   z01 = level(i, j + stride);
       const Point quad[] = {project(g.x(i), g.s(j), z00), project(g.x(i + stride), g.s(j), z10),
                             project(g.x(i + stride), g.s(j + stride), z11), project(g.x(i), g.s(j + stride), z01)};
       std::optional<plot::Colour> colour;

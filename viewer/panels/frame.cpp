@@ -155,7 +155,8 @@ double Frame::step() {
   const double wide = page.width / unit, high = page.height / unit;
   const double left = layout.show_left ? std::clamp(layout.left, 200.0, std::max(200.0, wide * 0.30)) : 0;
   const double right = layout.show_right ? std::clamp(layout.right, 220.0, std::max(220.0, wide * 0.32)) : 0;
-  const double strip = layout.show_strip ? std::clamp(layout.strip, 110.0, std::max(110.0, high * (high < 800 ? 0.26 : 0.42))) : 0;
+  const double strip =
+      layout.show_strip ? std::clamp(layout.strip, 110.0, std::max(110.0, high * (high < 800 ? 0.26 : 0.42))) : 0;
   const double header = 56;
   const auto px = [unit](double units) { return std::round(units * unit); };
   const double top = px(header), middle_height = page.height - top - px(strip);
