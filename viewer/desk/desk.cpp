@@ -229,6 +229,8 @@ std::vector<std::pair<std::string, std::string>> Desk::fields() const {
   if (!index) return all;
   for (const auto& [id, result] : solution->contacts[*index].analyses)
     for (const Field& field : result.fields) all.emplace_back(id + "." + field.name, field.title);
+  for (const auto& [id, result] : solution->contacts[*index].analyses)
+    for (const Volume& volume : result.volumes) all.emplace_back(id + "." + volume.name, volume.title + ", below");
   return all;
 }
 

@@ -85,7 +85,7 @@ class Desk {
   const plot::Theme& theme() const { return plot::theme(store_.layout.theme); }
   /// Index of the looked-at contact in a solution; the hardest pressed if the chosen one is not there.
   std::optional<std::size_t> contact_of(const Solution&) const;
-  /// Every field that the looked-at contact has: "pressure" first, then "analysis.field" with its title.
+  /// Every field and volume that the looked-at contact has: "pressure" first, then "analysis.name" with its title.
   std::vector<std::pair<std::string, std::string>> fields() const;
   static const Field* field_of(const Contact&, const std::string& name);
   static const Volume* volume_of(const Contact&, const std::string& name);

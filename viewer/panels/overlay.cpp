@@ -4,6 +4,7 @@
 #include <cmath>
 
 #include "viewer/panels/frame.h"
+#include "viewer/panels/volume_cut.h"
 #include "viewer/plates/sheet.h"
 
 namespace runband {
@@ -15,6 +16,16 @@ ShownField shown_field(const Desk& desk, const Solution& solution) {
   const View& view = desk.view();
   const auto index = desk.contact_of(solution);
   if (!index) return shown;
+  if (const Volume* volume = Desk::volume_of(solution.contacts[*index], view.field)) {
+    shown.volume = volume;
+    shown.title = volume->title;
+    shown.unit = volume->unit == "1" ? "" : volume->unit;
+    shown.map = view.map;
+    shown.range = {0, 0};
+    for (const double v : volume->values) shown.range.include(v);
+    if (view.locked_range) shown.range = *view.locked_range;
+    return shown;
+  }
   shown.field = Desk::field_of(solution.contacts[*index], view.field);
   if (shown.field == nullptr) shown.field = Desk::field_of(solution.contacts[*index], "pressure");
   if (shown.field == nullptr) return shown;
@@ -150,7 +161,12 @@ void draw_overlay(const Desk& desk, const Solution& solution, const SceneOverlay
                         {theme.ink, style.fine, plot::Dash::solid});
       }
     }
-    if (desk.view().detail == DetailStyle::relief) {
+    if (shown.volume != nullptr) {
+      DetailSubject below = subject;
+      below.range = shown.range;
+      below.map = shown.map;
+      draw_volume_cut(*shown.volume, below, place.centre, place.radius, place.scale, canvas, theme, style);
+    } else if (desk.view().detail == DetailStyle::relief) {
       draw_relief(subject, place.centre, place.radius, relief_turn_deg, relief_tilt_deg, canvas, theme, style);
     } else {
       draw_detail_view(subject, place.centre, place.radius, place.scale, canvas, theme, style);
@@ -164,7 +180,7 @@ void draw_overlay(const Desk& desk, const Solution& solution, const SceneOverlay
     const std::string words = contact_name(contact);
     canvas.text({letter.x + after, letter.y}, words, style.small(), theme.quiet, plot::Anchor::start, 0);
     // Rolls this way.
-    if (desk.view().detail == DetailStyle::flat) {
+    if (desk.view().detail == DetailStyle::flat || shown.volume != nullptr) {
       const Point a{place.centre.x + place.radius * 0.36, place.centre.y - place.radius * 0.80};
       plot::draw_arrow(canvas, a, {a.x + 9 * unit * 2.2, a.y}, {theme.accent, style.fine, plot::Dash::solid}, 6 * unit);
       canvas.text({a.x - 4 * unit, a.y + style.small_text * 0.35}, "rolls", style.small(), theme.accent,
@@ -172,10 +188,10 @@ void draw_overlay(const Desk& desk, const Solution& solution, const SceneOverlay
     }
   }
   draw_pin_list(desk, overlay.box, canvas, theme, style);
-  if (shown.field != nullptr) {
+  if (shown.field != nullptr || shown.volume != nullptr) {
     const double width = std::min(300 * unit, overlay.box.width - 48 * unit);
     const plot::Box bar{overlay.box.x + 24 * unit, overlay.box.bottom() - 60 * unit, width, 40 * unit};
-    if (shown.field->kind == Field::Kind::label) {
+    if (shown.field != nullptr && shown.field->kind == Field::Kind::label) {
       double x = bar.x;
       for (const std::string& label : shown.field->labels) {
         const plot::Colour ink = plot::state_colour(label == "stick"  ? plot::StateInk::stick

@@ -12,6 +12,7 @@ namespace runband {
 /// The field that is shown, with its map and range as the view asks for them.
 struct ShownField {
   const Field* field = nullptr;
+  const Volume* volume = nullptr;  ///< instead of a field: shown as a cut below the patch
   std::string title, unit;
   plot::ColourMap map = plot::ColourMap::ember;
   plot::Range range{0, 1};
