@@ -10,6 +10,7 @@
 #include <iterator>
 #include <set>
 
+#include "core/analysis/plugin.h"
 #include "core/base/error.h"
 #include "core/solve/solution.h"
 
@@ -31,7 +32,8 @@ const std::vector<Row> kNotUsed = {
     {"no_entry", "it has no entry point; declare one with RUNBAND_ANALYSIS."},
     {"no_tag", "it is not a plugin of this program (it shows no tag)."},
     {"magic", "it is not a plugin of this program (its tag does not begin as one)."},
-    {"old_version", "its SDK version is " + std::to_string(0)},
+    {"old_version",
+     "its SDK version is " + std::to_string(kSdkVersion - 1) + ", this program's is " + std::to_string(kSdkVersion)},
     {"wrong_tag_size", "its size of the tag is "},
     {"wrong_size", "its size of a field is "},
     {"wrong_alignment", "its Eigen's alignment is 32, this program's is 16; build it again against this version."},
