@@ -1,4 +1,5 @@
 // The wheelset moved across the track, position by position.
+#include <algorithm>
 #include <cmath>
 #include <numbers>
 
@@ -45,11 +46,18 @@ Traverse traverse(const Case& c, std::shared_ptr<const Locator> locator, const s
   t.asked = c;
   t.locator = std::move(locator);
   const double yaw_rad = c.state.yaw_mrad * 1e-3;
+  // Some positions at a time: each is followed from the one before it, and the user can stop in between.
+  constexpr std::size_t kAtATime = 64;
+  std::vector<RigidContact> contacts;
   for (std::size_t i = 0; i < positions.size(); ++i) {
-    if (i % 64 == 0)
+    if (i % kAtATime == 0) {
       progress.at(0.1 + 0.7 * static_cast<double>(i) / static_cast<double>(positions.size()),
                   "moving across the track");
-    const RigidContact contact = t.locator->rigid(positions[i], yaw_rad, c.state.reference);
+      const auto from = positions.begin() + static_cast<std::ptrdiff_t>(i);
+      const auto count = static_cast<std::ptrdiff_t>(std::min(kAtATime, positions.size() - i));
+      contacts = t.locator->rigid(std::vector<double>(from, from + count), yaw_rad, c.state.reference);
+    }
+    const RigidContact& contact = contacts[i % kAtATime];
     t.lateral_mm.push_back(positions[i]);
     t.rolling_radius_difference_mm.push_back(contact.touch[0].rolling_radius_mm - contact.touch[1].rolling_radius_mm);
     t.roll_mrad.push_back(contact.pose.roll_rad * 1e3);
