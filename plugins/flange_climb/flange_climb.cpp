@@ -72,9 +72,10 @@ class FlangeClimb final : public Analysis {
     used("climb_limit_used_low_friction", "Climb limit used, friction lower by the spread", nadal(angle, low));
     used("climb_limit_used_high_friction", "Climb limit used, friction higher by the spread", nadal(angle, high));
     if (!c.on_bench && angle < kFlange_rad)
-      r.cautions.push_back({"not_on_the_flange", Severity::note,
-                            "This contact lies on the tread: Nadal's limit is meant for the flange, and for the forces "
-                            "of the whole wheel."});
+      r.cautions.push_back(
+          {"not_on_the_flange", Severity::note,
+           "This contact lies off the flange: Nadal's limit is meant for the flange, and for the forces "
+           "of the whole wheel."});
     Curve over_friction{"nadal_limit_over_friction",
                         "Nadal's limit at this contact angle",
                         "friction",

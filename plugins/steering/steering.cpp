@@ -161,7 +161,8 @@ class Steering final : public Analysis {
     if (here >= d.begin() && here <= d.end()) {
       const double present = d.at(here);
       r.quantities.push_back({"radius_difference", "Rolling radius difference", "mm", present, names.level});
-      if (present != 0)
+      constexpr double kRounding_mm = 1e-9;
+      if (std::abs(present) > kRounding_mm)
         r.quantities.push_back({"free_rolling_curve", "Curve rolled freely, + turns left", "m",
                                 -radius * distance / present * 1e-3, redtenbacher});
     }
