@@ -60,6 +60,7 @@ class SlipBands final : public Analysis {
       across = forces.across_N;
     }
     const double limit = c.friction * c.zone.normal_force_N;
+    if (c.zone.ellipse && limit > 0) r.curves.push_back(creep_curve(c, elastic));
     r.quantities.push_back({"force_rolling", "Creep force in rolling", "N", along, method});
     r.quantities.push_back({"force_across", "Creep force across", "N", across, method});
     r.quantities.push_back({"saturation", "Share of the friction limit used", "1",
@@ -72,6 +73,34 @@ class SlipBands final : public Analysis {
   }
 
  private:
+  /// Force over the creepage, the state's creepages growing together from none to full slip, by the cubic law of Shen,
+  /// Hedrick and Elkins: cheap enough to be there always, whatever method gives the state itself.
+  static Curve creep_curve(const PatchContext& c, const ElasticPair& elastic) {
+    const HertzEllipse& e = *c.zone.ellipse;
+    Curve curve{"creep_curve",
+                "Creep force over creepage",
+                "creepage over that of this state",
+                "1",
+                "share of the friction limit",
+                "1",
+                {},
+                {},
+                "Shen, Hedrick and Elkins 1983"};
+    const auto coefficients = creep_coefficients(e.semi_axis_rolling_mm / e.semi_axis_across_mm, elastic.poisson_ratio);
+    const double limit = c.friction * c.zone.normal_force_N;
+    for (int k = 0; k <= 60; ++k) {
+      const double part = 0.05 * k;
+      const CreepForces f = shen_hedrick_elkins(
+          {e.semi_axis_rolling_mm, e.semi_axis_across_mm, c.zone.normal_force_N, c.friction, elastic.shear_modulus_MPa,
+           elastic.poisson_ratio, part * c.inputs.quantity("longitudinal_creepage"),
+           part * c.inputs.quantity("lateral_creepage"), part * c.inputs.quantity("spin")},
+          coefficients);
+      curve.x.push_back(part);
+      curve.y.push_back(std::hypot(f.rolling_N, f.across_N) / limit);
+    }
+    return curve;
+  }
+
   static const HertzEllipse& ellipse_of(const PatchContext& c, const std::string& method) {
     if (c.zone.ellipse) return *c.zone.ellipse;
     throw InputError(ErrorCode::conflicting_keys, method + " needs an ellipse, and this patch has none.",
