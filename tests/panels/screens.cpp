@@ -43,6 +43,7 @@ int main(int argc, char** argv) {
         keep(user, folder / (stem + "_scene.png"));
         user.key(Key::h);
         keep(user, folder / (stem + "_scene_half_space.png"));
+        user.desk.keep_picture(folder / (stem + "_kept.png"));
         user.key(Key::d);
         keep(user, folder / (stem + "_relief.png"));
         user.key(Key::n2);

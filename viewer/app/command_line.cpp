@@ -81,11 +81,11 @@ int run_command_line(int argc, char** argv, const Progress& progress) {
   traverse_verb->add_option("--step", traverse.step_mm, "step, mm (default 0.1)");
 
   DrawOptions draw;
-  auto* draw_verb = app.add_subcommand("draw", "a plate: section, patch, scene or traverse");
+  auto* draw_verb = app.add_subcommand("draw", "a plate: section, patch, curve, scene or traverse");
   add_case(draw_verb, draw.input);
   draw_verb->add_option("--plate", draw.plate, "which")
       ->required()
-      ->check(CLI::IsMember({"section", "patch", "scene", "traverse"}));
+      ->check(CLI::IsMember({"section", "patch", "curve", "scene", "traverse"}));
   draw_verb->add_option("--out", draw.out, "file; its ending says the format: png, svg, pdf (scene: png, glb)")
       ->required()
       ->type_name("FILE");
@@ -96,6 +96,9 @@ int run_command_line(int argc, char** argv, const Progress& progress) {
       ->capture_default_str();
   draw_verb->add_flag("--transparent", draw.transparent, "no background");
   draw_verb->add_option("--contact", draw.contact, "only this one, for example \"left tread\" or right");
+  draw_verb
+      ->add_option("--field", draw.field, "of an analysis: a field on the patch, or a curve: wear.frictional_power")
+      ->type_name("ANALYSIS.NAME");
   draw_verb->add_option("--date", draw.date,
                         "date to print in the title block (none by default: same input, same bytes)");
 

@@ -50,6 +50,7 @@ struct DrawOptions {
   std::string theme = "paper";
   bool transparent = false;
   std::string contact;  ///< "left", "right tread", ...; empty: all, or the one that matters most
+  std::string field;    ///< of an analysis, for patch and curve
   std::string date;     ///< printed in the title block if given
 };
 int draw_command(const DrawOptions&, const Progress&);

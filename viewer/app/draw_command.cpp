@@ -11,6 +11,13 @@ int draw_command(const DrawOptions& options, const Progress& progress) {
   Plate plate;
   plate.kind = options.plate;
   plate.contact = options.contact;
+  plate.field = options.field;
+  if (plate.kind == "curve" && plate.field.empty())
+    throw InputError(ErrorCode::bad_option, "draw: --plate curve needs --field ANALYSIS.CURVE.",
+                     "write for example --field steering.equivalent_conicity.");
+  if (!plate.field.empty() && plate.kind != "curve" && plate.kind != "patch")
+    throw InputError(ErrorCode::bad_option, "draw: --field belongs to --plate patch and --plate curve.",
+                     "leave it out, or choose one of these.");
   plate.dpi = options.dpi;
   plate.transparent = options.transparent;
   plate.date = options.date;

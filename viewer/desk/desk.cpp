@@ -234,27 +234,6 @@ std::vector<std::pair<std::string, std::string>> Desk::fields() const {
   return all;
 }
 
-const Field* Desk::field_of(const Contact& contact, const std::string& name) {
-  if (name == "pressure") return contact.patch ? &contact.patch->pressure : nullptr;
-  const std::size_t dot = name.find('.');
-  if (dot == std::string::npos) return nullptr;
-  const auto result = contact.analyses.find(name.substr(0, dot));
-  if (result == contact.analyses.end()) return nullptr;
-  for (const Field& field : result->second.fields)
-    if (field.name == name.substr(dot + 1)) return &field;
-  return nullptr;
-}
-
-const Volume* Desk::volume_of(const Contact& contact, const std::string& name) {
-  const std::size_t dot = name.find('.');
-  if (dot == std::string::npos) return nullptr;
-  const auto result = contact.analyses.find(name.substr(0, dot));
-  if (result == contact.analyses.end()) return nullptr;
-  for (const Volume& volume : result->second.volumes)
-    if (volume.name == name.substr(dot + 1)) return &volume;
-  return nullptr;
-}
-
 // ---- Time
 
 void Desk::ask_solver(int slot) {

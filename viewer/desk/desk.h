@@ -87,8 +87,6 @@ class Desk {
   std::optional<std::size_t> contact_of(const Solution&) const;
   /// Every field and volume that the looked-at contact has: "pressure" first, then "analysis.name" with its title.
   std::vector<std::pair<std::string, std::string>> fields() const;
-  static const Field* field_of(const Contact&, const std::string& name);
-  static const Volume* volume_of(const Contact&, const std::string& name);
 
   // ---- Time
 

@@ -6,6 +6,7 @@
 #include "core/base/error.h"
 #include "core/base/file.h"
 #include "viewer/desk/desk.h"
+#include "viewer/scene/fields.h"
 
 namespace runband {
 
@@ -158,7 +159,7 @@ void Desk::add_actions() {
           }
           if (!now().solution) return;
           const auto index = contact_of(*now().solution);
-          const Field* field = index ? field_of(now().solution->contacts[*index], v.field) : nullptr;
+          const Field* field = index ? field_named(now().solution->contacts[*index], v.field) : nullptr;
           if (field == nullptr) return;
           plot::Range range{0, 0};
           for (const double value : field->values) range.include(value);

@@ -4,7 +4,6 @@
 #include <cmath>
 #include <numbers>
 
-#include "viewer/desk/desk.h"
 #include "viewer/plates/sheet.h"
 
 namespace runband {
@@ -13,60 +12,8 @@ using plot::Point;
 
 bool DetailPlace::contains(Point p) const { return std::hypot(p.x - centre.x, p.y - centre.y) <= radius; }
 
-std::vector<double> scalars_of(const Field& field) {
-  if (field.components == 1) return field.values;
-  std::vector<double> lengths;
-  const auto n = static_cast<std::size_t>(field.components);
-  for (std::size_t i = 0; i + n <= field.values.size(); i += n) {
-    double sum = 0;
-    for (std::size_t c = 0; c < n; ++c) sum += field.values[i + c] * field.values[i + c];
-    lengths.push_back(std::sqrt(sum));
-  }
-  return lengths;
-}
-
-plot::Range range_of(const Field& field, plot::ColourMap map) {
-  plot::Range range{0, 0};
-  for (const double v : scalars_of(field)) range.include(v);
-  if (plot::is_signed(map)) {
-    const double reach = std::max(-range.low, range.high);
-    range = {-reach, reach};
-  }
-  if (!(range.span() > 0)) range.high = range.low + 1;
-  return range;
-}
-
-plot::ColourMap map_for(const Field& field, plot::ColourMap wanted) {
-  if (field.components > 1) return wanted;
-  bool negative = false;
-  for (const double v : field.values) negative = negative || v < 0;
-  return negative ? plot::ColourMap::tide : wanted;
-}
-
 plot::HeatMap field_map(const Contact& contact, const Field& field, const DetailSubject& subject) {
-  plot::HeatMap map = pressure_map(contact, subject.range.high);
-  map.values = scalars_of(field);
-  map.map = subject.map;
-  map.range = subject.range;
-  map.empty_value.reset();
-  // Outside the patch nothing is shown, whatever the field holds there.
-  for (std::size_t k = 0; k < map.values.size() && k < contact.patch->pressure.values.size(); ++k)
-    if (contact.patch->pressure.values[k] <= 0) map.values[k] = std::nan("");
-  if (field.kind == Field::Kind::label) {
-    for (const std::string& label : field.labels)
-      map.inks.push_back(plot::state_colour(label == "stick"  ? plot::StateInk::stick
-                                            : label == "slip" ? plot::StateInk::slip
-                                                              : plot::StateInk::open));
-    return map;
-  }
-  if (subject.steps > 1)
-    for (double& v : map.values)
-      if (!std::isnan(v)) {
-        const double t = std::clamp((v - map.range.low) / map.range.span(), 0.0, 1.0);
-        const double step = std::min(subject.steps - 1.0, std::floor(t * subject.steps));
-        v = map.range.low + (step + 0.5) / subject.steps * map.range.span();
-      }
-  return map;
+  return field_heat_map(contact, field, subject.map, subject.range, subject.steps);
 }
 
 namespace {
@@ -74,7 +21,7 @@ namespace {
 /// The border between stick and slip as pieces of cell edges.
 void draw_states(const Contact& contact, const DetailPlace& place, plot::Canvas& canvas, const plot::Theme& theme,
                  const plot::Style& style) {
-  const Field* state = Desk::field_of(contact, "slip_bands.adhesion");
+  const Field* state = field_named(contact, "slip_bands.adhesion");
   if (state == nullptr) return;
   const Grid& g = state->grid;
   int stick = 1, slip = 2;
@@ -150,7 +97,7 @@ void draw_states(const Contact& contact, const DetailPlace& place, plot::Canvas&
 
 void draw_arrows(const Contact& contact, const DetailPlace& place, plot::Canvas& canvas, const plot::Theme& theme,
                  const plot::Style& style) {
-  const Field* traction = Desk::field_of(contact, "slip_bands.traction");
+  const Field* traction = field_named(contact, "slip_bands.traction");
   if (traction == nullptr || traction->components != 2) return;
   const Grid& g = traction->grid;
   double most = 0;
@@ -184,7 +131,7 @@ DetailPlace draw_detail_view(const DetailSubject& subject, Point centre, double 
   const DetailPlace place{centre, radius, scale};
   const std::vector<Point> ring = plot::circle(centre, radius);
   canvas.polygon(ring, theme.sheet);
-  const Field* field = Desk::field_of(contact, subject.field);
+  const Field* field = field_named(contact, subject.field);
   canvas.push_clip(ring);
   if (field != nullptr) {
     const plot::HeatMap map = field_map(contact, *field, subject);
@@ -259,7 +206,7 @@ void draw_relief(const DetailSubject& subject, Point centre, double radius, doub
   const Contact& contact = *subject.contact;
   const std::vector<Point> ring = plot::circle(centre, radius);
   canvas.polygon(ring, theme.sheet);
-  const Field* field = Desk::field_of(contact, subject.field);
+  const Field* field = field_named(contact, subject.field);
   canvas.push_clip(ring);
   if (field != nullptr) {
     const plot::HeatMap map = field_map(contact, *field, subject);

@@ -7,6 +7,7 @@
 #include "core/solve/solution.h"
 #include "viewer/desk/view.h"
 #include "viewer/plot/plot.h"
+#include "viewer/scene/fields.h"
 
 namespace runband {
 
@@ -29,12 +30,6 @@ struct DetailPlace {
   bool contains(plot::Point p) const;
 };
 
-/// A scalar for each cell: the field itself, the length of a vector, or the label's number.
-std::vector<double> scalars_of(const Field&);
-/// Range that shows all of a field: from zero for magnitudes, symmetric for signed maps.
-plot::Range range_of(const Field&, plot::ColourMap);
-/// The map that suits a field: tide where it has both signs.
-plot::ColourMap map_for(const Field&, plot::ColourMap wanted);
 /// The field as a heat map of its inks.
 plot::HeatMap field_map(const Contact&, const Field&, const DetailSubject&);
 

@@ -16,7 +16,7 @@ ShownField shown_field(const Desk& desk, const Solution& solution) {
   const View& view = desk.view();
   const auto index = desk.contact_of(solution);
   if (!index) return shown;
-  if (const Volume* volume = Desk::volume_of(solution.contacts[*index], view.field)) {
+  if (const Volume* volume = volume_named(solution.contacts[*index], view.field)) {
     shown.volume = volume;
     shown.title = volume->title;
     shown.unit = volume->unit == "1" ? "" : volume->unit;
@@ -26,15 +26,15 @@ ShownField shown_field(const Desk& desk, const Solution& solution) {
     if (view.locked_range) shown.range = *view.locked_range;
     return shown;
   }
-  shown.field = Desk::field_of(solution.contacts[*index], view.field);
-  if (shown.field == nullptr) shown.field = Desk::field_of(solution.contacts[*index], "pressure");
+  shown.field = field_named(solution.contacts[*index], view.field);
+  if (shown.field == nullptr) shown.field = field_named(solution.contacts[*index], "pressure");
   if (shown.field == nullptr) return shown;
   shown.title = view.field == "pressure" ? "contact pressure" : shown.field->title;
   shown.unit = shown.field->unit == "1" ? "" : shown.field->unit;
   shown.map = map_for(*shown.field, view.map);
   shown.range = range_of(*shown.field, shown.map);
   for (const Contact& contact : solution.contacts) {
-    const Field* field = Desk::field_of(contact, view.field);
+    const Field* field = field_named(contact, view.field);
     if (field == nullptr) continue;
     const plot::Range range = range_of(*field, shown.map);
     shown.range.include(range.low);
@@ -49,7 +49,7 @@ DetailSubject detail_subject(const Desk& desk, const Contact& contact, const Sho
   const View& view = desk.view();
   DetailSubject subject;
   subject.contact = &contact;
-  subject.field = Desk::field_of(contact, view.field) != nullptr ? view.field : "pressure";
+  subject.field = field_named(contact, view.field) != nullptr ? view.field : "pressure";
   subject.map = shown.map;
   subject.steps = view.steps;
   subject.range = shown.range;

@@ -2,7 +2,10 @@
 #include <algorithm>
 #include <cmath>
 
+#include "core/base/error.h"
+#include "core/base/text.h"
 #include "viewer/plates/sheet.h"
+#include "viewer/scene/fields.h"
 
 namespace runband {
 
@@ -13,7 +16,61 @@ namespace {
 
 constexpr const char* kRollsThisWay = "rolls this way";
 
-plot::Plot patch_plot(const Contact& contact, double highest_MPa) {
+/// What the plate shows of every patch, on one range.
+struct Shown {
+  std::string name = "pressure", title = "contact pressure", unit = "MPa";
+  plot::ColourMap map = plot::ColourMap::ember;
+  plot::Range range{0, 0};
+  std::vector<std::string> labels;
+  std::vector<plot::Colour> inks;
+};
+
+Shown shown_of(const Solution& solution, const std::vector<std::size_t>& chosen, const std::string& name) {
+  Shown shown;
+  if (name.empty() || name == "pressure") {
+    for (const std::size_t i : chosen) shown.range.include(solution.contacts[i].patch->peak_pressure_MPa);
+    return shown;
+  }
+  shown.name = name;
+  bool any = false;
+  std::vector<std::string> known{"pressure"};
+  for (const std::size_t i : chosen) {
+    for (const auto& [id, result] : solution.contacts[i].analyses)
+      for (const Field& field : result.fields)
+        if (std::find(known.begin(), known.end(), id + "." + field.name) == known.end())
+          known.push_back(id + "." + field.name);
+    const Field* field = field_named(solution.contacts[i], name);
+    if (field == nullptr) continue;
+    any = true;
+    shown.title = field->title;
+    if (!shown.title.empty())
+      shown.title[0] = static_cast<char>(std::tolower(static_cast<unsigned char>(shown.title[0])));
+    shown.unit = field->unit == "1" ? "" : field->unit;
+    if (map_for(*field, shown.map) != shown.map) shown.map = plot::ColourMap::tide;
+    const plot::Range range = range_of(*field, shown.map);
+    shown.range.include(range.low);
+    shown.range.include(range.high);
+    shown.labels = field->labels;
+    shown.inks = label_inks(*field);
+  }
+  if (!any)
+    throw InputError(ErrorCode::unknown_name, "--field " + name + ": no loaded contact has such a field.",
+                     "there are: " + join_names(known) + ".");
+  return shown;
+}
+
+/// Inks and names of a label field, where a colour bar would stand.
+void draw_label_key(const Shown& shown, const Box& bar, plot::Canvas& canvas, const plot::Theme& theme,
+                    const plot::Style& style) {
+  double x = bar.x;
+  for (std::size_t k = 0; k < shown.labels.size(); ++k) {
+    canvas.polygon(plot::corners({x, bar.y, 4 * style.mm, 2.6 * style.mm}), shown.inks[k]);
+    plot::draw_text(canvas, {x + 5.5 * style.mm, bar.y + 2.3 * style.mm}, shown.labels[k], style.small(), theme.ink);
+    x += canvas.measure(shown.labels[k], style.small()).width + 11 * style.mm;
+  }
+}
+
+plot::Plot patch_plot(const Contact& contact, const Shown& shown) {
   const Patch& patch = *contact.patch;
   plot::Plot p;
   p.x.title = "rolling direction, x";
@@ -21,7 +78,11 @@ plot::Plot patch_plot(const Contact& contact, double highest_MPa) {
   p.y.title = "across, s";
   p.y.unit = "mm";
   p.equal_aspect = true;
-  p.maps.push_back(pressure_map(contact, highest_MPa));
+  const Field* field = field_named(contact, shown.name);
+  if (shown.name == "pressure")
+    p.maps.push_back(pressure_map(contact, shown.range.high));
+  else if (field != nullptr)
+    p.maps.push_back(field_heat_map(contact, *field, shown.map, shown.range));
   if (contact.zone.ellipse) {
     plot::Line outline = ellipse_line(*contact.zone.ellipse);
     if (patch.method == PatchMethod::half_space) outline.dash = plot::Dash::dashed;
@@ -83,9 +144,9 @@ void draw_patch_plate(const Solution& solution, const Plate& plate, plot::Canvas
   Box body = draw_title_block(title_block(solution.asked, plate, state_text(solution)), canvas, theme, style);
   const auto chosen = chosen_contacts(solution, plate.contact);
 
-  double highest = 0, half_x = 0, half_s = 0;
+  const Shown shown = shown_of(solution, chosen, plate.field);
+  double half_x = 0, half_s = 0;
   for (const std::size_t i : chosen) {
-    highest = std::max(highest, solution.contacts[i].patch->peak_pressure_MPa);
     const auto [x, s] = reach(solution.contacts[i]);
     half_x = std::max(half_x, x);
     half_s = std::max(half_s, s);
@@ -121,7 +182,7 @@ void draw_patch_plate(const Solution& solution, const Plate& plate, plot::Canvas
   std::vector<Box> boxes;
   double scale = 1e9;
   for (std::size_t k = 0; k < chosen.size(); ++k) {
-    plots.push_back(patch_plot(solution.contacts[chosen[k]], highest));
+    plots.push_back(patch_plot(solution.contacts[chosen[k]], shown));
     plots.back().x.range = along;
     plots.back().y.range = across;
     plots.back().disc = plot::ScaleDisc{};
@@ -156,7 +217,10 @@ void draw_patch_plate(const Solution& solution, const Plate& plate, plot::Canvas
       draw_figures(contact, {boxes[k].x, boxes[k].bottom() + 1.5 * style.mm, boxes[k].width, figures - 1.5 * style.mm},
                    canvas, theme, style);
   }
-  plot::draw_colour_bar(bar, plot::ColourMap::ember, {0, highest}, "contact pressure", "MPa", canvas, theme, style);
+  if (shown.labels.empty())
+    plot::draw_colour_bar(bar, shown.map, shown.range, shown.title, shown.unit, canvas, theme, style);
+  else
+    draw_label_key(shown, bar, canvas, theme, style);
 }
 
 }  // namespace runband

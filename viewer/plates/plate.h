@@ -10,8 +10,9 @@
 namespace runband {
 
 struct Plate {
-  std::string kind;     ///< "section", "patch", "scene" or "traverse"
+  std::string kind;     ///< "section", "patch", "curve", "scene" or "traverse"
   std::string contact;  ///< "left", "right tread", ...; empty: all (patch), or the one pressed hardest (section, scene)
+  std::string field;    ///< patch: "analysis.field", empty for the pressure; curve: "analysis.curve"
   double width_mm = 180, height_mm = 120;
   double dpi = 300;
   plot::ThemeName theme = plot::ThemeName::paper;

@@ -8,6 +8,7 @@
 #include "core/base/text.h"
 #include "core/base/version.h"
 #include "core/profile/checksum.h"
+#include "viewer/scene/fields.h"
 
 namespace runband {
 
@@ -173,6 +174,27 @@ plot::HeatMap pressure_map(const Contact& contact, double highest_MPa) {
   return map;
 }
 
+plot::HeatMap field_heat_map(const Contact& contact, const Field& field, plot::ColourMap colours,
+                             const plot::Range& range, int steps) {
+  plot::HeatMap map = pressure_map(contact, range.high);
+  map.values = scalars_of(field);
+  map.map = colours;
+  map.range = range;
+  map.empty_value.reset();
+  map.inks = label_inks(field);
+  // Outside the patch nothing is shown, whatever the field holds there.
+  for (std::size_t k = 0; k < map.values.size() && k < contact.patch->pressure.values.size(); ++k)
+    if (contact.patch->pressure.values[k] <= 0) map.values[k] = std::nan("");
+  if (steps > 1 && map.inks.empty()) {
+    for (double& v : map.values) {
+      if (std::isnan(v)) continue;
+      const double t = std::clamp((v - range.low) / range.span(), 0.0, 1.0);
+      v = range.low + (std::min(steps - 1.0, std::floor(t * steps)) + 0.5) / steps * range.span();
+    }
+  }
+  return map;
+}
+
 std::string detail_letter(const Contact& contact) {
   if (contact.on_bench) return "B";
   return contact.zone.side == Side::left ? "L" : "R";
@@ -205,6 +227,10 @@ void draw_plate(const Plate& plate, const Solution& solution, const std::filesys
     return plot::write_picture(out, picture_options(plate, solution.asked),
                                [&](plot::Canvas& canvas) { draw_patch_plate(solution, plate, canvas); });
   }
+  if (plate.kind == "curve") {
+    return plot::write_picture(out, picture_options(plate, solution.asked),
+                               [&](plot::Canvas& canvas) { draw_curve_plate(solution, plate, canvas); });
+  }
   if (plate.kind == "section") {
     if (solution.asked.bench)
       throw InputError(ErrorCode::conflicting_keys, "draw: a bench case has no profiles to draw a section of.",
@@ -213,7 +239,7 @@ void draw_plate(const Plate& plate, const Solution& solution, const std::filesys
                                [&](plot::Canvas& canvas) { draw_section_plate(solution, plate, canvas); });
   }
   throw InputError(ErrorCode::unknown_name, "\"" + plate.kind + "\" is not a plate.",
-                   "there are section, patch, scene and traverse.");
+                   "there are section, patch, curve, scene and traverse.");
 }
 
 void draw_plate(const Plate& plate, const Traverse& traverse, const std::filesystem::path& out) {

@@ -37,6 +37,8 @@ std::size_t hardest_contact(const Solution&, const std::string& wanted);
 
 void draw_patch_plate(const Solution&, const Plate&, plot::Canvas&);
 void draw_section_plate(const Solution&, const Plate&, plot::Canvas&);
+/// A curve of an analysis, of every contact that has it. @throws InputError (unknown_name) naming those there are.
+void draw_curve_plate(const Solution&, const Plate&, plot::Canvas&);
 void draw_traverse_plate(const Traverse&, const Plate&, plot::Canvas&);
 void draw_scene_plate(const Solution&, const Plate&, const std::filesystem::path& out);
 
@@ -44,6 +46,8 @@ void draw_scene_plate(const Solution&, const Plate&, const std::filesystem::path
 plot::HeatMap pressure_map(const Patch&, double highest_MPa);
 /// The same of a contact: where Hertz's ellipse is the patch, its edge cuts the cells.
 plot::HeatMap pressure_map(const Contact&, double highest_MPa);
+/// Any field of a contact as a heat map; nothing where there is no contact. @param steps 0: flowing
+plot::HeatMap field_heat_map(const Contact&, const Field&, plot::ColourMap, const plot::Range&, int steps = 0);
 /// Letter of a contact's detail view: L or R, B on the bench.
 std::string detail_letter(const Contact&);
 /// In capitals, for the label over a figure.

@@ -23,6 +23,7 @@
 #include <utility>
 
 #include "viewer/scene/bodies.h"
+#include "viewer/scene/fields.h"
 #include "viewer/scene/scene_meshes.h"
 
 namespace runband {
@@ -33,28 +34,6 @@ constexpr double kViewAngle_deg = 24;
 constexpr int kSettledSamples = 4;
 constexpr double kOrbit_rad_per_px = 0.006;
 constexpr double kSteepest = 0.9995;  // sine of the largest elevation
-
-const Field* field_named(const Contact& contact, const std::string& name) {
-  if (name == "pressure") return contact.patch ? &contact.patch->pressure : nullptr;
-  const std::size_t dot = name.find('.');
-  const auto result = contact.analyses.find(name.substr(0, dot));
-  if (dot == std::string::npos || result == contact.analyses.end()) return nullptr;
-  for (const Field& field : result->second.fields)
-    if (field.name == name.substr(dot + 1)) return &field;
-  return nullptr;
-}
-
-std::vector<double> cell_values(const Field& field) {
-  if (field.components == 1) return field.values;
-  std::vector<double> lengths;
-  const auto n = static_cast<std::size_t>(field.components);
-  for (std::size_t i = 0; i + n <= field.values.size(); i += n) {
-    double sum = 0;
-    for (std::size_t c = 0; c < n; ++c) sum += field.values[i + c] * field.values[i + c];
-    lengths.push_back(std::sqrt(sum));
-  }
-  return lengths;
-}
 
 void place(vtkActor* actor, const Eigen::Affine3d& at) {
   vtkNew<vtkMatrix4x4> matrix;
@@ -151,12 +130,8 @@ struct LiveScene::Parts {
       PatchInks inks{look.map, look.range, look.steps, {}};
       const Field* field = field_named(contact, look.field);
       std::vector<double> values;
-      if (field != nullptr) values = cell_values(*field);
-      if (field != nullptr && field->kind == Field::Kind::label)
-        for (const std::string& label : field->labels)
-          inks.inks.push_back(plot::state_colour(label == "stick"  ? plot::StateInk::stick
-                                                 : label == "slip" ? plot::StateInk::slip
-                                                                   : plot::StateInk::open));
+      if (field != nullptr) values = scalars_of(*field);
+      if (field != nullptr) inks.inks = label_inks(*field);
       auto actor = make_flat(patch_sheet(contact, 0.4, field != nullptr ? &values : nullptr), &inks, {});
       actor->PickableOff();
       (k == look.contact ? over : bodies)->AddActor(actor);
