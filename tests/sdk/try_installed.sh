@@ -53,19 +53,19 @@ refused 'cannot be made' even_load --into "$program/none"
 
 # A plugin of somebody's own; and one whose name is also that of a type of the SDK.
 for name in even_load patch; do
-  project=$place/work/$name
-  quietly "$new_plugin" "$name" --into "$place/work"
+  project=$place/made/$name
+  quietly "$new_plugin" "$name" --into "$place/made"
   quietly cmake -S "$project" -B "$project/build" -DCMAKE_PREFIX_PATH="$prefix" -DCMAKE_CXX_FLAGS="-Wall -Wextra -Wshadow -Wconversion -Werror"
 done
-quietly cmake --build "$place/work/patch/build" --target runband_patch
-quietly cmake --build "$place/work/even_load/build"
-quietly ctest --test-dir "$place/work/even_load/build" --output-on-failure
+quietly cmake --build "$place/made/patch/build" --target runband_patch
+quietly cmake --build "$place/made/even_load/build"
+quietly ctest --test-dir "$place/made/even_load/build" --output-on-failure
 grep -q '100% tests passed, 0 tests failed out of 1' "$place/log" || fail "the new plugin's test did not run"
-[ "$(ls -A "$place/work" | tr '\n' ' ')" = "even_load patch " ] || fail "new_plugin left something beside its folders"
+[ "$(ls -A "$place/made" | tr '\n' ' ')" = "even_load patch " ] || fail "new_plugin left something beside its folders"
 
 # The installed program, asked by numbers. H. Hertz 1881: the peak is 1.5 times the mean.
 case=$prefix/share/runband/demo/bench.toml
-export RUNBAND_PLUGIN_PATH=$place/work/even_load/build
+export RUNBAND_PLUGIN_PATH=$place/made/even_load/build
 number() { awk -v name="\"$1\":" '$1 == name { here = 1 } here && $1 == "\"value\":" { sub(/,/, "", $2); print $2; exit }' "$place/json"; }
 near() { awk -v a="$1" -v b="$2" -v tolerance="$3" 'BEGIN { d = (a - b) / b; exit !(a != "" && b + 0 != 0 && d <= tolerance && d >= -tolerance) }'; }
 "$program" solve "$case" --with even_load --set analyses.even_load.level=0.6 --json >"$place/json"
@@ -88,6 +88,6 @@ chmod g-w "$RUNBAND_PLUGIN_PATH"
 
 # Installed among Runband's own it needs no path.
 unset RUNBAND_PLUGIN_PATH
-quietly cmake --install "$place/work/even_load/build" --prefix "$prefix"
+quietly cmake --install "$place/made/even_load/build" --prefix "$prefix"
 "$program" analyses | grep -q '^even_load ' || fail "an installed plugin is not found"
 refused 'a plugin that Runband has' even_load --into "$place/none"
