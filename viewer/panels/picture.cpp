@@ -43,7 +43,8 @@ void Frame::draw_picture(const std::filesystem::path& file) {
     return draw_plate(plate, solution, file);
   }
   const plot::PictureOptions options = picture_options(plate, solution.asked);
-  const auto [width, height] = plot::pixels_of(options);
+  const std::pair<int, int> pixels = plot::pixels_of(options);
+  const int width = pixels.first, height = pixels.second;
   const double px_per_mm = plate.dpi / 25.4;
   const plot::Theme& theme = plot::theme(plate.theme);
   // The scene takes the page above the title block.
